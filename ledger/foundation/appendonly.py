@@ -69,7 +69,7 @@ class AppendOnlyModel(models.Model):
     """A row that is written once and never changed or deleted."""
 
     rows_are_sealed: ClassVar[bool] = True
-    objects: ClassVar[models.Manager[Any]] = models.Manager.from_queryset(AppendOnlyQuerySet)()
+    objects = models.Manager.from_queryset(AppendOnlyQuerySet)()
 
     class Meta:
         abstract = True
