@@ -1,0 +1,92 @@
+"""Takes by a member who is suspended: the book enforces what a ladder decided."""
+
+from datetime import date
+
+import numpy as np
+
+from governance import facts, periods
+from governance.bylaws import clauses
+from governance.compliance import evidence, findings, ground, sentences
+
+
+def taken_while_suspended(
+    *, book: clauses.Book, live: ground.Mask, laid: ground.Ground
+) -> tuple[findings.Finding, ...]:
+    """Return one finding per member, resource and day with a take under suspension.
+
+    It stands under the clause that the suspension was decided for. Where several suspensions run,
+    the first of them is named: one act is found once.
+
+    :param live: the days of the season on which this edition is in force.
+    """
+    suspended = laid.member_days(
+        (position, each.during)
+        for position, member in enumerate(laid.holders.members)
+        for each in member.suspended
+    )
+    if not suspended.any():
+        return ()
+    cells = (suspended & live).ravel()
+    return tuple(
+        _finding(book=book, laid=laid, takes=takes, rows=group)
+        for takes in laid.takes
+        for group in evidence.grouped(
+            rows=np.flatnonzero(cells[takes.cell] & (takes.table.amount > 0)), by=takes.cell
+        )
+    )
+
+
+def _finding(
+    *, book: clauses.Book, laid: ground.Ground, takes: ground.Takes, rows: facts.Column
+) -> findings.Finding:
+    read = sentences.reading(book=book, table=takes.table)
+    acts = evidence.acts(table=takes.table, rows=rows)
+    member = laid.holders.members[int(takes.position[rows[0]])]
+    suspension = _first_over(member, periods.date_of(acts[0].day))
+    key = findings.Key(
+        clause=suspension.value,
+        subject_kind=findings.SubjectKind.MEMBER,
+        subject=member.number,
+        resource=takes.table.resource,
+        window=evidence.day_of(acts),
+    )
+    total = sum(act.amount for act in acts)
+    named = (suspension.entry, suspension.value, suspension.during)
+    return findings.Finding(
+        key=key,
+        edition=book.edition,
+        or_else=_ladder(book=book, clause_id=suspension.value),
+        base=read.base,
+        total=total,
+        limit=0,
+        breach=total,
+        overuse=total,
+        entries=evidence.entries(acts),
+        working=(
+            sentences.taken(acts=acts, window=key.window, read=read),
+            f"Entry {suspension.entry} suspended the member for clause {suspension.value}"
+            f" {sentences.when(suspension.during)}.",
+            f"Limit {read.text(0)} while suspended; beyond it {read.text(total)}.",
+        ),
+        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*acts, named)),
+    )
+
+
+def _first_over(member: facts.Member, day: date) -> facts.Dated[str]:
+    return min(
+        (each for each in member.suspended if each.during.holds(day)),
+        key=lambda each: (each.during.first, each.entry),
+    )
+
+
+def _ladder(*, book: clauses.Book, clause_id: str) -> str | None:
+    """Return the ladder that the clause names, or the clause itself if it is one.
+
+    A suspension outlives the clause it was decided for: then nothing further follows by the book.
+    """
+    for clause in book.clauses:
+        if clause.head.id == clause_id:
+            if isinstance(clause, clauses.SanctionLadder):
+                return clause.head.id
+            return clause.head.or_else
+    return None
