@@ -190,7 +190,10 @@ class Order:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Observation:
-    """A reading of the resource: a yearly index, a catch, or the biomass of a ground."""
+    """A reading of the resource: a yearly index, a catch, or what a survey found on a zone.
+
+    ``error`` is the reading's coefficient of variation, where it is known.
+    """
 
     entry: int
     resource: str
@@ -199,6 +202,7 @@ class Observation:
     year: int
     value: Fraction
     unit: str
+    error: Fraction | None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

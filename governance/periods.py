@@ -3,7 +3,7 @@
 import enum
 from collections.abc import Iterator
 from dataclasses import dataclass
-from datetime import date, datetime, timedelta
+from datetime import UTC, date, datetime, time, timedelta
 from typing import ClassVar, assert_never
 from zoneinfo import ZoneInfo
 
@@ -90,6 +90,11 @@ def local_day(instant: datetime, *, zone: str) -> date:
     if instant.tzinfo is None:
         raise ValueError("the instant has no offset")
     return instant.astimezone(ZoneInfo(zone)).date()
+
+
+def start_of_day(day: date, *, zone: str) -> datetime:
+    """Return the instant at which a calendar day begins in a time zone, in UTC."""
+    return datetime.combine(day, time.min, tzinfo=ZoneInfo(zone)).astimezone(UTC)
 
 
 def span_starts(days: NDArray[np.int64], *, per: Per, season: DateRange) -> NDArray[np.int64]:

@@ -12,7 +12,7 @@ from dataclasses import dataclass, field
 from datetime import UTC, date, datetime
 from hashlib import sha256
 from types import MappingProxyType
-from typing import Any, ClassVar, TypeAlias
+from typing import Any, ClassVar, NamedTuple, TypeAlias
 
 import rfc8785
 
@@ -130,6 +130,18 @@ class EntryRecord:
     facts: dict[str, Any]
     postings: tuple[Posting, ...]
     texts: dict[str, str]
+
+
+class Row(NamedTuple):
+    """What rules and reports read of a standing entry: all but postings and texts."""
+
+    number: int
+    kind: str
+    subject: int | None
+    day: date
+    occurred_at: datetime
+    recorded_at: datetime
+    facts: dict[str, Any]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -91,6 +91,17 @@ def open_journal(*, commons_id: int, clock: Clock, chance: Chance) -> None:
 
 
 @transactions.required
+def hold(*, commons_id: int) -> None:
+    """Take the lock on the head, so that nothing is appended until the transaction ends.
+
+    :raises JournalNotOpen: if the commons has no journal.
+    """
+    head, _ = writing.lock(commons_id=commons_id, keys={})
+    if head is None:
+        raise queries.JournalNotOpen(commons_id=commons_id)
+
+
+@transactions.required
 def append(
     *, commons_id: int, drafts: Sequence[Draft], by: int, clock: Clock, chance: Chance
 ) -> tuple[Receipt, ...]:

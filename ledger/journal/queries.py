@@ -3,16 +3,13 @@
 import json
 from collections.abc import Collection, Iterator
 from datetime import UTC, date, datetime
-from typing import Any, ClassVar, TypeAlias
+from typing import ClassVar
 
 from django.db.models import Exists, OuterRef, Sum
 
 from ledger.foundation.errors import LedgerError
 from ledger.journal import columns, models, tree
-from ledger.journal.leaves import EntryRecord, HeadRecord
-
-Row: TypeAlias = tuple[int, str, int | None, date, datetime, datetime, dict[str, Any], int | None]
-"""number, kind, subject, day, occurred_at, recorded_at, facts, reverses"""
+from ledger.journal.leaves import EntryRecord, HeadRecord, Row
 
 # More than this many members are told apart here rather than in the statement.
 SUBJECTS_MAX = 500
@@ -173,14 +170,12 @@ def rows(
         found, subjects = found.filter(subject__in=subjects), None
     wanted = None if subjects is None else frozenset(subjects)
     return [
-        (number, kind, subject, day, occurred_at, recorded_at, json.loads(facts), reverses)
-        for number, kind, subject, day, occurred_at, recorded_at, facts, reverses in found.exclude(
+        Row(number, kind, subject, day, occurred_at, recorded_at, json.loads(facts))
+        for number, kind, subject, day, occurred_at, recorded_at, facts in found.exclude(
             Exists(reversal)
         )
         .order_by("number")
-        .values_list(
-            "number", "kind", "subject", "day", "occurred_at", "recorded_at", "facts", "reverses"
-        )
+        .values_list("number", "kind", "subject", "day", "occurred_at", "recorded_at", "facts")
         if wanted is None or subject in wanted
     ]
 

@@ -1,0 +1,170 @@
+"""Cases as they stand, and the step that a ladder comes to."""
+
+from collections import defaultdict
+from collections.abc import Iterable
+from dataclasses import dataclass
+from datetime import date
+from itertools import pairwise
+from typing import ClassVar
+
+from governance.bylaws import clauses
+from governance.compliance.findings import SubjectKind
+from governance.sanctions import ladder, record
+from governance.sanctions.moves import State
+from ledger.bylaws import queries as bylaws
+from ledger.cases import columns, models
+from ledger.commons import queries as commons
+from ledger.foundation.errors import LedgerError
+from ledger.judgement import queries as judgement
+
+# Where nothing more happens to a case by itself.
+ENDED = frozenset({State.SET_ASIDE, State.OVERTURNED, State.DONE})
+
+
+class UnknownCase(LedgerError):
+    """The commons has no case of this number, or none on such a finding."""
+
+    code: ClassVar[str] = "cases.unknown_case"
+    message: ClassVar[str] = "Found no case {found}."
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CaseRecord:
+    """A case: what it rests on and where it stands.
+
+    ``version`` is the finding's version that the last event rests on; ``effects`` are the entries
+    that carried the decision out; ``told_on`` and ``decided_on`` are kept through a return to
+    checking, for the record of how long things took.
+    """
+
+    number: int
+    finding: judgement.FindingRecord
+    version: int
+    ladder: str
+    so_far: record.CaseSoFar
+    events: tuple[record.Event, ...]
+    entries: tuple[int, ...]
+    effects: tuple[int, ...]
+
+    @property
+    def noted_on(self) -> date:
+        """Return the day that the case was noted."""
+        return self.events[0].on
+
+
+def cases(*, commons_id: int) -> tuple[CaseRecord, ...]:
+    """Return the cases of a commons in order of number."""
+    found = {
+        each.number: each for each in judgement.latest(commons_id=commons_id).values()
+    }
+    events: dict[int, list[models.Event]] = defaultdict(list)
+    for row in models.Event.objects.filter(commons_id=commons_id).order_by("case", "place"):
+        events[row.case].append(row)
+    rows = models.Case.objects.filter(commons_id=commons_id).order_by("number")
+    return tuple(_record(row, events[row.number], found[row.finding]) for row in rows)
+
+
+def case(*, commons_id: int, number: int) -> CaseRecord:
+    """Return one case.
+
+    :raises UnknownCase: if there is none of this number.
+    """
+    row = models.Case.objects.filter(commons_id=commons_id, number=number).first()
+    if row is None:
+        raise UnknownCase(found=f"of number {number}")
+    events = models.Event.objects.filter(commons_id=commons_id, case=number).order_by("place")
+    finding = judgement.finding(commons_id=commons_id, number=row.finding)
+    return _record(row, events, finding)
+
+
+def case_on(*, commons_id: int, clause: str, subject: int, first: date) -> CaseRecord:
+    """Return the case on a clause, a subject and a window's first day.
+
+    :raises UnknownCase: if there is none.
+    """
+    for each in cases(commons_id=commons_id):
+        key = each.finding.finding.key
+        if (key.clause, key.subject, key.window.first) == (clause, subject, first):
+            return each
+    raise UnknownCase(found=f"on clause {clause}, subject {subject}, from {first}")
+
+
+def number_on_finding(*, commons_id: int, finding: int) -> int | None:
+    """Return the number of the case on a finding, if one was opened."""
+    return (
+        models.Case.objects.filter(commons_id=commons_id, finding=finding)
+        .values_list("number", flat=True)
+        .first()
+    )
+
+
+def concerned(*, commons_id: int, finding: judgement.FindingRecord) -> frozenset[int]:
+    """Return the members whom a finding concerns: the member, or the whole household."""
+    key = finding.finding.key
+    if key.subject_kind is SubjectKind.HOUSEHOLD:
+        return commons.household_of(commons_id=commons_id, household=key.subject)
+    return frozenset({key.subject})
+
+
+def ladder_of(*, commons_id: int, case: CaseRecord) -> clauses.SanctionLadder:
+    """Return the ladder of a case, as the edition said that was in force at the act."""
+    found = book_of(commons_id=commons_id, case=case).clause(case.ladder)
+    assert isinstance(found, clauses.SanctionLadder), "an or-else names a ladder"
+    return found
+
+
+def book_of(*, commons_id: int, case: CaseRecord) -> clauses.Book:
+    """Return the edition that the case's finding was judged under."""
+    edition = case.finding.finding.edition
+    editions = bylaws.adopted(commons_id=commons_id).books
+    return next(book for book in editions if book.edition == edition)
+
+
+def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.StepDue:
+    """Return the step that the ladder comes to if the case is decided on a day."""
+    earlier = [
+        ladder.EarlierAct(
+            case=other.number,
+            act_on=other.finding.finding.key.window.first,
+            told_on=other.so_far.told_on,
+            final_on=other.so_far.final_on,
+        )
+        for other in cases(commons_id=commons_id)
+        if other.number != case.number
+        and other.ladder == case.ladder
+        and other.so_far.subjects & case.so_far.subjects
+    ]
+    return ladder.step_for(
+        ladder=ladder_of(commons_id=commons_id, case=case),
+        act_on=case.finding.finding.key.window.first,
+        earlier=earlier,
+        decided_on=decided_on,
+    )
+
+
+def days_between(case: CaseRecord) -> tuple[int | None, int | None]:
+    """Return the days from the act to the notice, and from the notice to the decision."""
+    told, decided = case.so_far.told_on, case.so_far.decided_on
+    act = case.finding.finding.key.window.first
+    return (
+        (told - act).days if told is not None else None,
+        (decided - told).days if told is not None and decided is not None else None,
+    )
+
+
+def _record(
+    row: models.Case, events: Iterable[models.Event], finding: judgement.FindingRecord
+) -> CaseRecord:
+    kept = list(events)
+    folded = tuple(columns.event(each) for each in kept)
+    assert all(one.place + 1 == two.place for one, two in pairwise(kept)), "events stand in a row"
+    return CaseRecord(
+        number=row.number,
+        finding=finding,
+        version=kept[-1].finding_version,
+        ladder=row.ladder,
+        so_far=record.fold(folded),
+        events=folded,
+        entries=tuple(each.entry_number for each in kept),
+        effects=tuple(kept[-1].effects),
+    )

@@ -1,0 +1,254 @@
+"""The judge at work: findings appended where facts changed, and the close of a season."""
+
+from collections.abc import Iterable, Mapping
+from datetime import date, timedelta
+from typing import ClassVar
+
+from governance import periods
+from governance.allocation import settlement
+from governance.bylaws import clauses
+from governance.compliance import reach
+from governance.compliance.findings import Finding, Key
+from governance.periods import DateRange
+from ledger.bylaws import queries as bylaws
+from ledger.commons import queries as commons
+from ledger.foundation import outbox, transactions
+from ledger.foundation.errors import LedgerError
+from ledger.foundation.hands import Hand
+from ledger.journal import operations as journal
+from ledger.journal import queries as journal_queries
+from ledger.journal.leaves import Posting, Receipt
+from ledger.judgement import columns, models, queries
+from ledger.movements import operations as movements
+from ledger.seasons import operations as seasons
+from ledger.seasons import queries as seasons_queries
+
+# A fact of these kinds can touch any member; a fact about one member touches that household.
+TOUCHING_ALL = frozenset(
+    {"edition_adopted", "outside_order", "allowable_adopted", "season_opened", "duties_assessed"}
+)
+
+
+class SeasonNotJudged(LedgerError):
+    """A season is to be closed before the judge has read every entry."""
+
+    code: ClassVar[str] = "judgement.season_not_judged"
+    message: ClassVar[str] = (
+        "The season {season} cannot close: the judge has read up to entry {judged} of {size}."
+    )
+
+
+class SeasonNotOver(LedgerError):
+    """A season is to be closed before its last day is over."""
+
+    code: ClassVar[str] = "judgement.season_not_over"
+    message: ClassVar[str] = "The season {season} cannot close on {day}: its last day is {last}."
+
+
+@transactions.required
+def judge(*, commons_id: int, as_of: date, hand: Hand) -> int:
+    """Judge the open seasons as of a day, append what changed, and return how many findings did.
+
+    Only the members that new entries touch are judged again, unless an entry touches all or a
+    season ended since the last time. The cases hear of the changes through the outbox.
+    """
+    cursor, _ = models.Cursor.objects.select_for_update().get_or_create(commons_id=commons_id)
+    size = journal_queries.head(commons_id=commons_id).size
+    members = _touched(commons_id=commons_id, after=cursor.judged_up_to, up_to=size)
+    known = queries.latest(commons_id=commons_id)
+    changes: list[models.FindingVersion] = []
+    for during in _open_windows(commons_id=commons_id, as_of=as_of):
+        has_ended = during.until <= as_of and not _had_ended(cursor, during)
+        judged_members = None if has_ended else members
+        found = queries.judged(
+            commons_id=commons_id,
+            during=during,
+            as_of=as_of,
+            up_to=size,
+            members=judged_members,
+        )
+        before = _of_window(known, during=during, members=judged_members)
+        changes += _changes(before=before, found=found)
+    _number(changes, commons_id=commons_id, known=known, up_to=size, as_of=as_of)
+    models.FindingVersion.objects.bulk_create(changes)
+    cursor.judged_up_to, cursor.judged_on = size, as_of
+    cursor.save()
+    if changes:
+        outbox.enqueue(
+            commons_id=commons_id,
+            kind="hear_findings",
+            key=f"{as_of.isoformat()}/{size}",
+            due_at=hand.clock(),
+            payload={"findings": [change.finding for change in changes]},
+            clock=hand.clock,
+        )
+    _call_again(commons_id=commons_id, as_of=as_of, hand=hand)
+    return len(changes)
+
+
+@transactions.required
+def assess_duties(*, commons_id: int, during: DateRange, hand: Hand) -> Receipt | None:
+    """Charge the members with the duties that the edition in force lays on them for a season."""
+    book = bylaws.in_force(commons_id=commons_id, day=during.first)
+    roster = commons.roster(commons_id=commons_id)
+    owed = (
+        (clause, member.number)
+        for clause in book.clauses
+        if isinstance(clause, clauses.WorkDuty)
+        for member in roster.members
+        if clause.head.who is None or member.is_in(clause.head.who, during.first)
+    )
+    return movements.assess_duties(
+        commons_id=commons_id, duties=owed, during=during, hand=hand
+    )
+
+
+@transactions.required
+def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
+    """Close a season: carry over, note what is owed, return the rest to the pool; all or nothing.
+
+    :raises SeasonNotOver: if a day of the season is left.
+    :raises SeasonNotJudged: if the judge has not reached the head.
+    :raises ledger.seasons.operations.SeasonAlreadyClosed: if it was closed before.
+    """
+    journal.hold(commons_id=commons_id)
+    opened = seasons_queries.season(commons_id=commons_id, code=season)
+    today = commons.commons(commons_id=commons_id).day_of(hand.clock())
+    if today < opened.during.until:
+        raise SeasonNotOver(season=season, day=today, last=opened.during.last)
+    judged = queries.judged_up_to(commons_id=commons_id)
+    size = journal_queries.head(commons_id=commons_id).size
+    if judged < size:
+        raise SeasonNotJudged(season=season, judged=judged, size=size)
+    postings = tuple(_settling(commons_id=commons_id, season=opened))
+    return seasons.record_close(
+        commons_id=commons_id, season=season, postings=postings, hand=hand
+    )
+
+
+def _open_windows(*, commons_id: int, as_of: date) -> tuple[DateRange, ...]:
+    """Return the windows of seasons that have begun and are not closed."""
+    opened = seasons_queries.seasons(commons_id=commons_id).values()
+    begun = {
+        season.during
+        for season in opened
+        if not season.closed and season.during.first <= as_of
+    }
+    return tuple(sorted(begun))
+
+
+def _had_ended(cursor: models.Cursor, during: DateRange) -> bool:
+    return cursor.judged_on is not None and during.until <= cursor.judged_on
+
+
+def _touched(*, commons_id: int, after: int, up_to: int) -> frozenset[int] | None:
+    """Return the members that the entries after a number can touch; None is everybody."""
+    entries = list(journal_queries.entries(commons_id=commons_id, after=after, up_to=up_to))
+    if any(entry.kind in TOUCHING_ALL for entry in entries):
+        return None
+    subjects = frozenset(entry.subject for entry in entries if entry.subject is not None)
+    return reach.touched(roster=commons.roster(commons_id=commons_id), members=subjects)
+
+
+def _of_window(
+    known: Mapping[Key, queries.FindingRecord],
+    *,
+    during: DateRange,
+    members: frozenset[int] | None,
+) -> dict[Key, queries.FindingRecord]:
+    """Return the standing findings of a season's window about some members."""
+    return {
+        key: record
+        for key, record in known.items()
+        if record.standing
+        and during.holds(key.window.first)
+        and (members is None or key.subject in members)
+    }
+
+
+def _changes(
+    *, before: Mapping[Key, queries.FindingRecord], found: Iterable[Finding]
+) -> list[models.FindingVersion]:
+    """Return the new versions: findings that are new or differ, and those that are gone."""
+    now = {finding.key: finding for finding in found}
+    changed = [
+        models.FindingVersion(standing=True, **columns.fields(finding))
+        for key, finding in sorted(now.items())
+        if key not in before or before[key].finding.inputs != finding.inputs
+    ]
+    gone = [
+        models.FindingVersion(standing=False, **columns.fields(record.finding))
+        for key, record in sorted(before.items())
+        if key not in now
+    ]
+    return changed + gone
+
+
+def _number(
+    changes: Iterable[models.FindingVersion],
+    *,
+    commons_id: int,
+    known: Mapping[Key, queries.FindingRecord],
+    up_to: int,
+    as_of: date,
+) -> None:
+    """Give each version its finding's number, its own, and what it was judged on."""
+    last = max((record.number for record in known.values()), default=0)
+    for change in changes:
+        before = known.get(columns.finding(change).key)
+        if before is None:
+            last += 1
+        change.commons_id = commons_id
+        change.finding = last if before is None else before.number
+        change.version = 1 if before is None else before.version + 1
+        change.judged_up_to = up_to
+        change.judged_on = as_of
+
+
+def _call_again(*, commons_id: int, as_of: date, hand: Hand) -> None:
+    """Promise the next day's judging while a season that has begun is open."""
+    if not _open_windows(commons_id=commons_id, as_of=as_of):
+        return
+    tomorrow = as_of + timedelta(days=1)
+    zone = commons.commons(commons_id=commons_id).zone
+    outbox.enqueue(
+        commons_id=commons_id,
+        kind="judge",
+        key=tomorrow.isoformat(),
+        due_at=periods.start_of_day(tomorrow + timedelta(days=1), zone=zone),
+        payload={},
+        clock=hand.clock,
+    )
+
+
+def _settling(*, commons_id: int, season: seasons_queries.SeasonRecord) -> Iterable[Posting]:
+    """Yield the postings that bring every member's account of a season to zero."""
+    base = commons.resource(commons_id=commons_id, code=season.resource).base
+    book = bylaws.in_force(commons_id=commons_id, day=season.during.last)
+    of_resource = [
+        clause
+        for clause in book.clauses
+        if isinstance(clause, clauses.CarryOver | clauses.Payback)
+        and clause.resource == season.resource
+    ]
+    carry_over = next((each for each in of_resource if isinstance(each, clauses.CarryOver)), None)
+    payback = next((each for each in of_resource if isinstance(each, clauses.Payback)), None)
+    taken = seasons_queries.taken(commons_id=commons_id, season=season.code)
+    for member, left in seasons_queries.left(commons_id=commons_id, season=season.code).items():
+        settled = settlement.settle(
+            carry_over=carry_over,
+            payback=payback,
+            allotted=left + taken.get(member, 0),
+            taken=taken.get(member, 0),
+        )
+        carried = settled.carried - settled.owed
+        lines = (
+            (seasons_queries.left_account(season=season.code, member=member), -left),
+            (seasons_queries.carried_account(resource=season.resource, member=member), carried),
+            (seasons_queries.pool_account(season=season.code), left - carried),
+        )
+        for account, amount in lines:
+            if amount:
+                yield Posting(
+                    account=account, resource=season.resource, unit=base, amount=amount
+                )

@@ -1,0 +1,120 @@
+"""The findings as they stand, and the facts that they are made from."""
+
+from collections.abc import Collection, Mapping
+from dataclasses import dataclass
+from datetime import date
+
+from governance import facts
+from governance.compliance import explain, judge
+from governance.compliance.findings import Finding, Key
+from governance.periods import DateRange
+from ledger.bylaws import queries as bylaws
+from ledger.commons import queries as commons
+from ledger.judgement import columns, models
+from ledger.movements import queries as movements
+from ledger.seasons import queries as seasons
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FindingRecord:
+    """The last version of a finding; not standing means that it was withdrawn."""
+
+    number: int
+    version: int
+    standing: bool
+    finding: Finding
+    judged_up_to: int
+    judged_on: date
+
+
+def _record(row: models.FindingVersion) -> FindingRecord:
+    return FindingRecord(
+        number=row.finding,
+        version=row.version,
+        standing=row.standing,
+        finding=columns.finding(row),
+        judged_up_to=row.judged_up_to,
+        judged_on=row.judged_on,
+    )
+
+
+def latest(*, commons_id: int, up_to: int | None = None) -> Mapping[Key, FindingRecord]:
+    """Return the last version of every finding by its key, as known up to an entry number."""
+    rows = models.FindingVersion.objects.filter(commons_id=commons_id)
+    if up_to is not None:
+        rows = rows.filter(judged_up_to__lte=up_to)
+    records = (_record(row) for row in rows.order_by("finding", "version"))
+    return {record.finding.key: record for record in records}
+
+
+def finding(*, commons_id: int, number: int, version: int | None = None) -> FindingRecord:
+    """Return a finding by number: one version of it, or the last."""
+    rows = models.FindingVersion.objects.filter(commons_id=commons_id, finding=number)
+    if version is not None:
+        rows = rows.filter(version=version)
+    row = rows.order_by("-version").first()
+    assert row is not None, "findings are named by those who read them"
+    return _record(row)
+
+
+def judged_up_to(*, commons_id: int) -> int:
+    """Return the number of the last entry that the judge has read."""
+    cursor = models.Cursor.objects.filter(commons_id=commons_id).first()
+    return cursor.judged_up_to if cursor is not None else 0
+
+
+def season_facts(
+    *,
+    commons_id: int,
+    during: DateRange,
+    up_to: int | None = None,
+    members: Collection[int] | None = None,
+) -> facts.SeasonFacts:
+    """Return what the judge reads of the seasons that share a window.
+
+    Allotments are as they stand now; everything else is as known up to an entry number.
+    """
+    known = {"commons_id": commons_id, "up_to": up_to}
+    read = {"commons_id": commons_id, "during": during, "up_to": up_to, "members": members}
+    allotments = {
+        (season.resource, member): amount
+        for season in seasons.seasons(commons_id=commons_id).values()
+        if season.during == during
+        for member, amount in seasons.allotments(
+            commons_id=commons_id, season=season.code
+        ).items()
+    }
+    return facts.SeasonFacts(
+        season=during,
+        roster=commons.roster(**known),
+        withdrawals=movements.withdrawals(**read),
+        work=movements.work(**read),
+        money=movements.money_instead(**read),
+        orders=commons.orders(**known),
+        allotments=allotments,
+    )
+
+
+def judged(
+    *,
+    commons_id: int,
+    during: DateRange,
+    as_of: date,
+    up_to: int | None = None,
+    members: frozenset[int] | None = None,
+) -> tuple[Finding, ...]:
+    """Return what the judge finds in a window, without recording it."""
+    return judge.judge(
+        editions=bylaws.adopted(commons_id=commons_id, up_to=up_to),
+        facts=season_facts(commons_id=commons_id, during=during, up_to=up_to, members=members),
+        as_of=as_of,
+        members=members,
+    )
+
+
+def explained(*, commons_id: int, number: int) -> tuple[str, ...]:
+    """Return a finding opened in words, down to entries and clause."""
+    record = finding(commons_id=commons_id, number=number)
+    editions = bylaws.adopted(commons_id=commons_id).books
+    book = next(book for book in editions if book.edition == record.finding.edition)
+    return explain.explain(finding=record.finding, book=book)
