@@ -2,7 +2,7 @@
 
 import json
 from collections import defaultdict
-from collections.abc import Collection, Iterable, Iterator
+from collections.abc import Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from datetime import date, datetime
 from typing import Any
@@ -41,6 +41,7 @@ class SealedEntry:
     salt: bytes
     leaf_hash: bytes
     postings: tuple[leaves.Posting, ...]
+    posting_days: frozenset[date]
     texts: dict[str, SealedText]
 
     @property
@@ -68,19 +69,30 @@ class SealedEntry:
             subject=self.subject,
         )
 
-    def leaf(self, *, draft: leaves.Draft, journal_id: bytes) -> bytes:
-        """Return the leaf that a draft gives under this entry's number, instant and salts.
+    @property
+    def commitments(self) -> dict[str, str]:
+        """Return what the leaf says of the texts, by name."""
+        found: dict[str, str] = json.loads(self.commitments_text)
+        return found
 
-        Texts of the draft are committed to with the salts of this entry's texts of the same name;
-        a text without one is left out, so that the leaf differs.
+    def commit(self, texts: Mapping[str, str]) -> dict[str, str]:
+        """Return commitments to texts under the salts of this entry's texts of the same names.
+
+        A text of another name is left out, so that the commitments differ.
         """
+        return {
+            name: leaves.commitment(salt=self.texts[name].salt, text=text)
+            for name, text in texts.items()
+            if name in self.texts
+        }
+
+    def leaf(
+        self, *, draft: leaves.Draft, commitments: Mapping[str, str], journal_id: bytes
+    ) -> bytes:
+        """Return the leaf that a draft gives under this entry's number, instant and salt."""
         return leaves.leaf_bytes(
             draft=draft,
-            commitments={
-                name: leaves.commitment(salt=self.texts[name].salt, text=text)
-                for name, text in draft.texts.items()
-                if name in self.texts
-            },
+            commitments=commitments,
             journal_id=journal_id,
             number=self.number,
             recorded_at=self.recorded_at,
@@ -217,11 +229,13 @@ def _sealed(commons_id: int, entries: Iterable[models.Entry]) -> tuple[SealedEnt
     entries = tuple(entries)
     numbers = [entry.number for entry in entries]
     postings: defaultdict[int, list[leaves.Posting]] = defaultdict(list)
-    for number, account, resource, unit, amount in (
+    days: defaultdict[int, set[date]] = defaultdict(set)
+    for number, account, resource, unit, amount, day in (
         models.Posting.objects.filter(commons_id=commons_id, number__in=numbers)
         .order_by("number", "line")
-        .values_list("number", "account", "resource", "unit", "amount")
+        .values_list("number", "account", "resource", "unit", "amount", "day")
     ):
+        days[number].add(day)
         postings[number].append(
             leaves.Posting(account=account, resource=resource, unit=unit, amount=amount)
         )
@@ -249,6 +263,7 @@ def _sealed(commons_id: int, entries: Iterable[models.Entry]) -> tuple[SealedEnt
             salt=bytes(entry.salt),
             leaf_hash=bytes(entry.leaf_hash),
             postings=tuple(postings[entry.number]),
+            posting_days=frozenset(days[entry.number]),
             texts=texts[entry.number],
         )
         for entry in entries

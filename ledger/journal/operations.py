@@ -253,10 +253,14 @@ def _replayed(
         number = None if draft.key is None else standing.get((draft.device, draft.key))
         if number is None:
             continue
-        leaf = known[number].leaf(draft=draft, journal_id=head.journal_id)
-        if tree.leaf_hash(leaf) != known[number].leaf_hash:
+        entry = known[number]
+        leaf = entry.leaf(
+            draft=draft, commitments=entry.commit(draft.texts), journal_id=head.journal_id
+        )
+        # The same content under the same number, instant and salts is the same leaf.
+        if tree.leaf_hash(leaf) != entry.leaf_hash or set(draft.texts) != set(entry.texts):
             raise KeyReused(key=draft.key, device=draft.device, number=number)
-        found[place] = known[number]
+        found[place] = entry
     return found
 
 

@@ -263,7 +263,9 @@ def receipt_leaf(*, commons_id: int, number: int) -> bytes:
     """
     sealed = _sealed(commons_id, number)
     journal_id = models.Head.objects.values_list("journal_id", flat=True).get(pk=commons_id)
-    return sealed.leaf(draft=sealed.draft(), journal_id=bytes(journal_id))
+    return sealed.leaf(
+        draft=sealed.draft(), commitments=sealed.commitments, journal_id=bytes(journal_id)
+    )
 
 
 def _sealed(commons_id: int, number: int) -> columns.SealedEntry:
