@@ -17,8 +17,8 @@ from governance.errors import StintbookError
 
 FloatArray = NDArray[np.float64]
 
-# Stands in for nothing inside a logarithm; the smallest normal float, so no biomass is below it.
-_TINY = float(np.finfo(np.float64).tiny)
+# Stands in for nothing inside a logarithm: far below any biomass, and still a number over any K.
+NEXT_TO_NOTHING = 1e-200
 
 
 class ImpossibleParameter(StintbookError):
@@ -94,7 +94,7 @@ def production(
     """
     if p == 1:
         return r * biomass * (1 - biomass / K)
-    logarithm = np.log(np.maximum(biomass, _TINY) / K)
+    logarithm = np.log(np.maximum(biomass, NEXT_TO_NOTHING) / K)
     # expm1 keeps its digits where (B/K)^p is next to 1, which is what a small shape makes it.
     bend = logarithm if p == 0 else np.expm1(p * logarithm) / p
     return -r * biomass * bend
