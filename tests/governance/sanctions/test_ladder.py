@@ -98,6 +98,22 @@ class TestStep:
         assert found.counted == (1, 4)
         assert found.index == 2
 
+    @pytest.mark.parametrize(("told_after", "counted"), [(9, (1, 2)), (10, (1,))])
+    def test_an_act_on_the_day_of_the_telling_is_not_after_it(
+        self, told_after: int, counted: tuple[int, ...]
+    ) -> None:
+        found = due(earlier(1, days=300, told=told_after), earlier(2, days=290, told=10))
+        assert found.counted == counted
+
+    def test_a_late_telling_does_not_swallow_two_prompt_ones(self) -> None:
+        """Case 1 was told after 100 days; meanwhile cases 2 and 3 were acted and told in turn."""
+        found = due(
+            earlier(1, days=300, told=100, final=120),
+            earlier(2, days=290, told=5),
+            earlier(3, days=280, told=5),
+        )
+        assert (found.counted, found.index) == ((2, 3), 2)
+
     def test_working_says_of_each_why(self) -> None:
         found = due(
             earlier(1, days=800),
