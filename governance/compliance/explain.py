@@ -51,4 +51,4 @@ def _figures_line(*, finding: findings.Finding, book: clauses.Book) -> str:
 def _ladder_line(finding: findings.Finding) -> str:
     if finding.or_else is None:
         return "The book ties no sanction to this clause: it is reported only."
-    return f"What may follow is on the ladder {finding.or_else}; people decide."
+    return f"What may follow stands in {finding.or_else}; people decide."
