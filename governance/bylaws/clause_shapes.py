@@ -7,7 +7,7 @@ from typing import ClassVar
 from pydantic import Field, ValidationInfo, field_validator
 
 from governance import quantities
-from governance.bylaws import clauses, fields, shapes
+from governance.bylaws import clauses, context, fields, shapes
 from governance.periods import DateRange, Per
 
 
@@ -71,16 +71,16 @@ class Limit(shapes.Shape):
     def _in_units_of_the_resource(
         cls, more_than: quantities.Amount | None, info: ValidationInfo
     ) -> quantities.Amount | None:
-        base = fields.reading_of(info).base_of(info.data.get("resource"))
+        base = context.reading_of(info).base_of(info.data.get("resource"))
         if more_than is not None and base is not None:
-            fields.check_converts(more_than.unit, base)
+            context.check_converts(more_than.unit, base)
         return more_than
 
     @field_validator("per")
     @classmethod
     def _allotments_are_for_a_season(cls, per: Per, info: ValidationInfo) -> Per:
         if info.data.get("more_than", "unread") is None and per is not Per.SEASON:
-            raise fields.refusal(accepted="'season', for an allotment is a season's")
+            raise context.refusal(accepted="'season', for an allotment is a season's")
         return per
 
 
@@ -90,7 +90,7 @@ class QuantityLimit(shapes.BindingShape):
     deontic: ClassVar[tuple[str, str]] = ("must_not", "withdraw")
     what: Limit
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the resource's base unit."""
         return reading.base_of(self.what.resource)
 
@@ -138,7 +138,7 @@ class ClosedWindow(shapes.BindingShape):
     what: Grounds
     when: DaysOfYear
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the resource's base unit."""
         return reading.base_of(self.what.resource)
 
@@ -158,7 +158,7 @@ class OutsideOrder(shapes.BindingShape):
     deontic: ClassVar[tuple[str, str]] = ("must_not", "withdraw")
     what: Everywhere
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the resource's base unit."""
         return reading.base_of(self.what.resource)
 
@@ -179,7 +179,7 @@ class ReportingDuty(shapes.BindingShape):
     deontic: ClassVar[tuple[str, str]] = ("must", "report")
     what: Deadline
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the hour, which a late slip is late by."""
         return "h"
 
@@ -200,14 +200,14 @@ class Work(shapes.Shape):
     @classmethod
     def _fits_in_a_day(cls, day: int) -> int:
         if day > 24 * 60:
-            raise fields.refusal(accepted="at most 24 h")
+            raise context.refusal(accepted="at most 24 h")
         return day
 
     @field_validator("instead")
     @classmethod
     def _for_a_day(cls, instead: quantities.Price) -> quantities.Price:
         if instead.per != "d":
-            raise fields.refusal(accepted="a price for a working day, such as '60 EUR/d'")
+            raise context.refusal(accepted="a price for a working day, such as '60 EUR/d'")
         return instead
 
 
@@ -217,7 +217,7 @@ class WorkDuty(shapes.BindingShape):
     deontic: ClassVar[tuple[str, str]] = ("must", "contribute")
     what: Work
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the minute, which missing work is counted in."""
         return "min"
 

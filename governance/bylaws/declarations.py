@@ -5,17 +5,17 @@ itself be wrong; so names are gathered first, and loosely.
 """
 
 from governance import quantities
-from governance.bylaws import fields, tree
+from governance.bylaws import context, tree
 from governance.bylaws.problems import Problems
 
 
-def gathered(*, root: tree.Node, problems: Problems) -> fields.Reading:
+def gathered(*, root: tree.Node, problems: Problems) -> context.Reading:
     """Return what a book declares; None stands for a part that could not be made out."""
     if not isinstance(root, tree.Mapping):
-        return fields.Reading(
+        return context.Reading(
             problems=problems, resources=None, classes=None, ladders=None, money=None
         )
-    return fields.Reading(
+    return context.Reading(
         problems=problems,
         resources=_resources(root.value("resources")),
         classes=_classes(root.value("clauses")),

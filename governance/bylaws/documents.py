@@ -8,16 +8,17 @@ from governance import quantities
 from governance.bylaws import (
     clause_shapes,
     clauses,
+    context,
     declarations,
-    fields,
     ladder_shapes,
     markup,
     quota_shapes,
     shapes,
+    spelling,
     tree,
     validation,
 )
-from governance.bylaws.problems import Problems, choice, nearest, quoted
+from governance.bylaws.problems import Problems
 
 _DEONTICS = ("must", "must_not", "may")
 
@@ -67,7 +68,7 @@ def _parts(root: tree.Node, problems: Problems) -> _Parts | None:
     )
 
 
-def _ladders(node: tree.Node | None, reading: fields.Reading) -> dict[str, ladder_shapes.Ladder]:
+def _ladders(node: tree.Node | None, reading: context.Reading) -> dict[str, ladder_shapes.Ladder]:
     ladders = {}
     for name, each in node.items() if isinstance(node, tree.Mapping) else ():
         validation.check_name(name=name, reading=reading)
@@ -77,15 +78,15 @@ def _ladders(node: tree.Node | None, reading: fields.Reading) -> dict[str, ladde
     return ladders
 
 
-def _quotas(node: tree.Node | None, reading: fields.Reading) -> dict[str, quota_shapes.Quota]:
+def _quotas(node: tree.Node | None, reading: context.Reading) -> dict[str, quota_shapes.Quota]:
     quotas = {}
     for resource, each in node.items() if isinstance(node, tree.Mapping) else ():
         if reading.resources is not None and resource not in reading.resources:
             reading.problems.add(
                 at=resource,
-                found=quoted(resource),
-                accepted=f"a resource of this book: {choice(sorted(reading.resources))}",
-                nearest=nearest(resource, reading.resources),
+                found=spelling.quoted(resource),
+                accepted=f"a resource of this book: {spelling.choice(sorted(reading.resources))}",
+                nearest=spelling.nearest(resource, reading.resources),
             )
         quota = validation.validated(shape=quota_shapes.Quota, node=each, reading=reading)
         if quota is not None:
@@ -94,7 +95,7 @@ def _quotas(node: tree.Node | None, reading: fields.Reading) -> dict[str, quota_
 
 
 def _clauses(
-    node: tree.Node | None, ladders: Mapping[str, ladder_shapes.Ladder], reading: fields.Reading
+    node: tree.Node | None, ladders: Mapping[str, ladder_shapes.Ladder], reading: context.Reading
 ) -> list[tuple[tree.Mapping, shapes.ClauseShape]]:
     found = []
     ids: set[str] = set()
@@ -111,28 +112,30 @@ def _clauses(
     return found
 
 
-def _check_id(node: tree.Mapping, ids: set[str], reading: fields.Reading) -> None:
+def _check_id(node: tree.Mapping, ids: set[str], reading: context.Reading) -> None:
     clause_id = node.value("id")
     if not isinstance(clause_id, tree.Scalar):
         return
     if clause_id in ids:
         reading.problems.add(
             at=clause_id,
-            found=f"the id {quoted(clause_id)} a second time",
+            found=f"the id {spelling.quoted(clause_id)} a second time",
             accepted="an id of its own for every clause",
         )
     ids.add(str(clause_id))
 
 
-def _clause(node: tree.Mapping, reading: fields.Reading) -> shapes.ClauseShape | None:
+def _clause(node: tree.Mapping, reading: context.Reading) -> shapes.ClauseShape | None:
     kind = node.value("kind")
     shape = clause_shapes.KINDS.get(kind) if isinstance(kind, tree.Scalar) else None
     if shape is None:
         reading.problems.add(
             at=node if kind is None else kind,
             found="no 'kind'" if kind is None else f"the kind {tree.described(kind)}",
-            accepted=f"one of {choice(clause_shapes.KINDS)}",
-            nearest=nearest(kind, clause_shapes.KINDS) if isinstance(kind, tree.Scalar) else None,
+            accepted=f"one of {spelling.choice(clause_shapes.KINDS)}",
+            nearest=spelling.nearest(kind, clause_shapes.KINDS)
+            if isinstance(kind, tree.Scalar)
+            else None,
         )
         return None
     rest = _without_deontic(node, shape, str(kind), reading)
@@ -140,7 +143,7 @@ def _clause(node: tree.Mapping, reading: fields.Reading) -> shapes.ClauseShape |
 
 
 def _without_deontic(
-    node: tree.Mapping, shape: type[shapes.ClauseShape], kind: str, reading: fields.Reading
+    node: tree.Mapping, shape: type[shapes.ClauseShape], kind: str, reading: context.Reading
 ) -> tree.Mapping:
     """Check the clause's *must*, *must not* or *may*; return the clause without it."""
     said = [key for key in node if key in _DEONTICS or _is_deontic_misspelt(key, shape)]
@@ -148,8 +151,8 @@ def _without_deontic(
         for key in said:
             reading.problems.add(
                 at=key,
-                found=f"the key {quoted(key)}",
-                accepted=f"none of {choice(_DEONTICS)} in a clause of kind {kind!r}",
+                found=f"the key {spelling.quoted(key)}",
+                accepted=f"none of {spelling.choice(_DEONTICS)} in a clause of kind {kind!r}",
             )
     else:
         _check_deontic(node, said, shape.deontic, kind, reading)
@@ -157,7 +160,9 @@ def _without_deontic(
 
 
 def _is_deontic_misspelt(key: str, shape: type[shapes.ClauseShape]) -> bool:
-    return key not in shape.keys() and nearest(key, (*_DEONTICS, *shape.keys())) in _DEONTICS
+    return (
+        key not in shape.keys() and spelling.nearest(key, (*_DEONTICS, *shape.keys())) in _DEONTICS
+    )
 
 
 def _check_deontic(
@@ -165,7 +170,7 @@ def _check_deontic(
     said: list[tree.Scalar],
     deontic: tuple[str, str],
     kind: str,
-    reading: fields.Reading,
+    reading: context.Reading,
 ) -> None:
     expected, verb = deontic
     accepted = f"'{expected}: {verb}' in a clause of kind {kind!r}"
@@ -179,7 +184,9 @@ def _check_deontic(
             at=key if key != expected else value,
             found=f"'{key}: {value}'" if isinstance(value, str) else f"{key!r} with no verb",
             accepted=accepted,
-            nearest=nearest(key, [expected]) if key != expected else nearest(str(value), [verb]),
+            nearest=spelling.nearest(key, [expected])
+            if key != expected
+            else spelling.nearest(str(value), [verb]),
         )
 
 
@@ -187,7 +194,7 @@ def _check_fines(
     node: tree.Mapping,
     clause: shapes.ClauseShape,
     ladders: Mapping[str, ladder_shapes.Ladder],
-    reading: fields.Reading,
+    reading: context.Reading,
 ) -> None:
     """Note a ladder that fines by a unit which a breach of the clause is not counted in."""
     named, counted = node.value("or_else"), clause.counted_in(reading)
@@ -208,7 +215,7 @@ def _check_days(
     node: tree.Mapping,
     clause: shapes.ClauseShape,
     cover: shapes.Cover,
-    reading: fields.Reading,
+    reading: context.Reading,
 ) -> None:
     own, book = node.value("in_force"), cover.in_force.days()
     if (

@@ -4,8 +4,7 @@ from typing import Any
 
 from pydantic import field_validator, model_validator
 
-from governance.bylaws import clauses, fields, shapes, tree
-from governance.bylaws.problems import choice
+from governance.bylaws import clauses, context, fields, shapes, spelling, tree
 from governance.periods import DateRange
 
 
@@ -23,12 +22,12 @@ class Fine(shapes.Shape):
     @model_validator(mode="after")
     def _one_way_to_reckon(self) -> "Fine":
         if (self.flat is None) == (self.per_excess is None):
-            raise fields.refusal(
+            raise context.refusal(
                 found="a fine with both or neither of them",
                 accepted="either 'flat' or 'per_excess'",
             )
         if self.flat is not None and self.at_most is not None:
-            raise fields.refusal(accepted="a cap on 'per_excess' only", at="at_most")
+            raise context.refusal(accepted="a cap on 'per_excess' only", at="at_most")
         return self
 
     def record(self) -> clauses.Fine:
@@ -63,9 +62,9 @@ class Step(shapes.Shape):
     @model_validator(mode="after")
     def _one_each(self) -> "Step":
         if len(self.model_fields_set) != 1:
-            raise fields.refusal(
+            raise context.refusal(
                 found=f"{len(self.model_fields_set)} sanctions in one step",
-                accepted=f"one of {choice(Step.keys())}",
+                accepted=f"one of {spelling.choice(Step.keys())}",
             )
         return self
 
@@ -93,7 +92,7 @@ class Ladder(shapes.Shape):
     @classmethod
     def _at_least_one(cls, steps: list[Step]) -> list[Step]:
         if not steps:
-            raise fields.refusal(found="an empty list", accepted="at least one step")
+            raise context.refusal(found="an empty list", accepted="at least one step")
         return steps
 
     def fined_per(self) -> tuple[str, ...]:

@@ -11,8 +11,8 @@ from typing import Protocol
 
 import yaml
 
-from governance.bylaws import tree
-from governance.bylaws.problems import Place, Problems, quoted
+from governance.bylaws import spelling, tree
+from governance.bylaws.problems import Place, Problems
 
 LARGEST_BYTES = 256 * 1024
 DEEPEST = 20
@@ -142,12 +142,14 @@ class _Composer:
         if event.anchor is not None:
             self._problems.add(
                 at=place,
-                found=f"an anchor or alias {quoted(event.anchor)}",
+                found=f"an anchor or alias {spelling.quoted(event.anchor)}",
                 accepted="the text itself, written out",
             )
         tag = getattr(event, "tag", None)
         if tag is not None:
-            self._problems.add(at=place, found=f"a tag {quoted(tag)}", accepted="a value, untagged")
+            self._problems.add(
+                at=place, found=f"a tag {spelling.quoted(tag)}", accepted="a value, untagged"
+            )
 
     def _begin(self, event: yaml.NodeEvent, place: Place) -> None:
         if isinstance(event, yaml.ScalarEvent):
@@ -210,7 +212,7 @@ class _Composer:
         if node in parent:
             self._problems.add(
                 at=node,
-                found=f"the key {quoted(node)} a second time in one mapping",
+                found=f"the key {spelling.quoted(node)} a second time in one mapping",
                 accepted="each key once",
             )
             return tree.Scalar(node, line=node.line, column=node.column, refused=True)
@@ -220,7 +222,7 @@ class _Composer:
         if isinstance(node, tree.Scalar) and node.null and key not in _BARE_KEYS:
             self._problems.add(
                 at=node,
-                found=f"nothing after the key {quoted(key)}",
+                found=f"nothing after the key {spelling.quoted(key)}",
                 accepted="a value, or no such key",
             )
             node.refused = True

@@ -1,7 +1,5 @@
 """What is wrong with a book's text: one problem for each place, collected and raised together."""
 
-import difflib
-from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import ClassVar, Protocol
 
@@ -9,7 +7,6 @@ from governance.errors import StintbookError
 
 # A text that is wrong in more places than this is not a slip of the pen.
 MOST_PROBLEMS = 100
-_LONGEST_SHOWN = 60
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -114,21 +111,3 @@ class Problems:
     def _refuse(self, *, extent: str) -> None:
         ordered = sorted(self._found, key=lambda each: (each.line, each.column))
         raise UnreadableBook(problems=tuple(ordered), extent=extent)
-
-
-def nearest(name: str, known: Iterable[str]) -> str | None:
-    """Return the known name that a misspelt one is closest to, if any is close."""
-    if len(name) > _LONGEST_SHOWN:
-        return None
-    matches = difflib.get_close_matches(name, sorted(known), n=1, cutoff=0.6)
-    return matches[0] if matches else None
-
-
-def quoted(text: str) -> str:
-    """Write a found text in quotes, cut to a length that a message can carry."""
-    return repr(text if len(text) <= _LONGEST_SHOWN else text[:_LONGEST_SHOWN] + "…")
-
-
-def choice(names: Iterable[str], *, none: str = "nothing") -> str:
-    """Write accepted names as alternatives, or say in words that there are none."""
-    return ", ".join(repr(str(name)) for name in names) or none

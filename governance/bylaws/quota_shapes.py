@@ -4,7 +4,7 @@ from typing import Annotated, Literal
 
 from pydantic import Field, ValidationInfo, field_validator, model_validator
 
-from governance.bylaws import clauses, fields, shapes
+from governance.bylaws import clauses, context, fields, shapes
 from governance.periods import DateRange
 
 
@@ -35,7 +35,7 @@ class FortyTen(shapes.Shape):
     lower: fields.Stock
     upper: fields.Stock
     fraction: fields.HarvestFraction
-    reading: fields.Reading4010
+    reading: fields.FortyTenReading
 
     @field_validator("upper")
     @classmethod
@@ -74,7 +74,7 @@ class SurveyRate(shapes.Shape):
 def _above(low: clauses.Reference | None, high: clauses.Reference, name: str) -> clauses.Reference:
     # Levels in different points of the stock can be compared only once a model is fitted.
     if low is not None and low.of == high.of and high.multiple <= low.multiple:
-        raise fields.refusal(accepted=f"a level above the {name}")
+        raise context.refusal(accepted=f"a level above the {name}")
     return high
 
 
@@ -142,13 +142,13 @@ class Quota(shapes.Shape):
         self._check_observed({fields.Observed.SURVEY}, "'survey' alone")
         for key in ("growth", "shape", "order", "risk"):
             if getattr(self, key) is not None:
-                raise fields.refusal(
+                raise context.refusal(
                     found=f"the key {key!r} beside a survey rate",
                     accepted="no such key, for no stock is modelled",
                     at=key,
                 )
         if self.change_at_most is not None and self.change_at_most.unless_below is not None:
-            raise fields.refusal(
+            raise context.refusal(
                 found="the key 'unless_below' beside a survey rate",
                 accepted="'up' and 'down', for no stock is modelled",
                 at="change_at_most",
@@ -159,13 +159,13 @@ class Quota(shapes.Shape):
         self._check_observed(observed, "'survey' and 'catch'")
         for key in ("growth", "order"):
             if getattr(self, key) is None:
-                raise fields.refusal(
+                raise context.refusal(
                     found=f"no {key!r} beside a rule for a modelled stock",
                     accepted="'growth' and 'order' with every rule but 'survey_rate'",
                 )
         bent = self.growth is clauses.Growth.PELLA_TOMLINSON
         if bent != (self.shape is not None):
-            raise fields.refusal(
+            raise context.refusal(
                 found=f"growth {self.growth} {'without' if bent else 'with'} a 'shape'",
                 accepted="a 'shape' with pella_tomlinson, and only there",
                 at="growth",
@@ -173,7 +173,7 @@ class Quota(shapes.Shape):
 
     def _check_observed(self, observed: set[fields.Observed], accepted: str) -> None:
         if set(self.observe) != observed or len(self.observe) != len(observed):
-            raise fields.refusal(accepted=f"{accepted} with this rule", at="observe")
+            raise context.refusal(accepted=f"{accepted} with this rule", at="observe")
 
     def record(self, *, resource: str, book: DateRange) -> clauses.PoolTotal:
         """Return the clause that this stands for."""

@@ -18,8 +18,7 @@ from pydantic import (
 )
 
 from governance import quantities
-from governance.bylaws import clauses, fields, tree
-from governance.bylaws.problems import choice, nearest, quoted
+from governance.bylaws import clauses, context, fields, spelling, tree
 from governance.periods import OPEN_END, DateRange
 
 
@@ -37,15 +36,15 @@ class Shape(BaseModel):
     @classmethod
     def _note_keys(cls, data: Any, info: ValidationInfo) -> Any:
         if not isinstance(data, tree.Mapping):
-            raise fields.refusal(accepted=f"a mapping with the keys {choice(cls.keys())}")
+            raise context.refusal(accepted=f"a mapping with the keys {spelling.choice(cls.keys())}")
         meant = _note_unknown_keys(cls, data, info)
         required = [f.alias or name for name, f in cls.model_fields.items() if f.is_required()]
         missing = [key for key in required if key not in data and key not in meant]
         if missing:
-            fields.reading_of(info).problems.add(
+            context.reading_of(info).problems.add(
                 at=data,
-                found=f"no {choice(missing)}",
-                accepted=f"{choice(required)} in every such mapping",
+                found=f"no {spelling.choice(missing)}",
+                accepted=f"{spelling.choice(required)} in every such mapping",
             )
         return data.only(cls.keys())
 
@@ -56,12 +55,12 @@ def _note_unknown_keys(shape: type[Shape], data: tree.Mapping, info: ValidationI
     for key in data:
         if key in shape.keys():
             continue
-        near = nearest(key, [known for known in shape.keys() if known not in data])
+        near = spelling.nearest(key, [known for known in shape.keys() if known not in data])
         meant.update({near} if near else ())
-        fields.reading_of(info).problems.add(
+        context.reading_of(info).problems.add(
             at=key,
-            found=f"the key {quoted(key)}",
-            accepted=f"one of {choice(shape.keys())}",
+            found=f"the key {spelling.quoted(key)}",
+            accepted=f"one of {spelling.choice(shape.keys())}",
             nearest=near,
         )
     return meant
@@ -78,7 +77,7 @@ class InForce(Shape):
     def _ends_later(cls, until: datetime.date, info: ValidationInfo) -> datetime.date:
         first = info.data.get("from_")
         if first is not None and until <= first:
-            raise fields.refusal(accepted=f"a day after the first, {first}")
+            raise context.refusal(accepted=f"a day after the first, {first}")
         return until
 
     def days(self) -> DateRange:
@@ -126,7 +125,7 @@ class ResourceUnits(Shape):
             return base
         read, counted = quantities.unit(unit), quantities.unit(base)
         if read.measures != counted.measures or (read.size / counted.size).denominator != 1:
-            raise fields.refusal(accepted=f"a unit that {unit!r} is a whole number of")
+            raise context.refusal(accepted=f"a unit that {unit!r} is a whole number of")
         return base
 
 
@@ -171,7 +170,7 @@ class ClauseShape(Written):
         """Return the id of the ladder that follows a breach, if one does."""
         return None
 
-    def counted_in(self, reading: fields.Reading) -> str | None:
+    def counted_in(self, reading: context.Reading) -> str | None:
         """Return the unit that a breach of the clause is counted in, if it is known and counts."""
         return None
 
@@ -194,16 +193,18 @@ def once_each(names: list[str]) -> list[str]:
     """Return names of which there is at least one, and none twice."""
     twice = sorted({name for name in names if names.count(name) > 1})
     if twice:
-        raise fields.refusal(found=f"{choice(twice)} more than once", accepted="each name once")
+        raise context.refusal(
+            found=f"{spelling.choice(twice)} more than once", accepted="each name once"
+        )
     if not names:
-        raise fields.refusal(found="an empty list", accepted="at least one name")
+        raise context.refusal(found="an empty list", accepted="at least one name")
     return names
 
 
 def _any(kind: type[tree.Sequence] | type[tree.Mapping], accepted: str) -> PlainValidator:
     def read(value: object) -> object:
         if not isinstance(value, kind):
-            raise fields.refusal(accepted=accepted)
+            raise context.refusal(accepted=accepted)
         return value
 
     return PlainValidator(read)
@@ -228,7 +229,7 @@ class Cover(Shape):
     def _not_before_adoption(cls, in_force: InForce, info: ValidationInfo) -> InForce:
         adopted = info.data.get("adopted")
         if adopted is not None and in_force.from_ < adopted.on:
-            raise fields.refusal(
+            raise context.refusal(
                 accepted=f"a day not before the adoption on {adopted.on}", at="from"
             )
         return in_force

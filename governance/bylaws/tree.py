@@ -6,7 +6,7 @@ where it stands. ``refused`` marks a piece that has been reported on already.
 
 from typing import TypeAlias
 
-from governance.bylaws.problems import quoted
+from governance.bylaws import spelling
 
 
 class Scalar(str):
@@ -59,5 +59,5 @@ Node: TypeAlias = Scalar | Sequence | Mapping
 def described(node: object) -> str:
     """Say what stands at a place, for a message."""
     if isinstance(node, Scalar):
-        return "nothing" if node.null else quoted(node)
+        return "nothing" if node.null else spelling.quoted(node)
     return "a list" if isinstance(node, list) else "a mapping"

@@ -5,8 +5,8 @@ from typing import TypeVar
 from pydantic import TypeAdapter, ValidationError
 from pydantic_core import ErrorDetails
 
-from governance.bylaws import fields, shapes, tree
-from governance.bylaws.problems import Problems, nearest
+from governance.bylaws import context, fields, shapes, spelling, tree
+from governance.bylaws.problems import Problems
 
 Shaped = TypeVar("Shaped", bound=shapes.Shape)
 
@@ -20,7 +20,7 @@ _ACCEPTED_OF_TYPE = {
 }
 
 
-def validated(*, shape: type[Shaped], node: tree.Node, reading: fields.Reading) -> Shaped | None:
+def validated(*, shape: type[Shaped], node: tree.Node, reading: context.Reading) -> Shaped | None:
     """Return the shape of a node, or None where its problems have been noted."""
     try:
         return shape.model_validate(node, context=reading)
@@ -29,7 +29,7 @@ def validated(*, shape: type[Shaped], node: tree.Node, reading: fields.Reading) 
         return None
 
 
-def check_name(*, name: tree.Scalar, reading: fields.Reading) -> None:
+def check_name(*, name: tree.Scalar, reading: context.Reading) -> None:
     """Note a key that should be a name and is none."""
     try:
         _NAME.validate_python(name, context=reading)
@@ -69,5 +69,5 @@ def _note_kind(error: ErrorDetails, problems: Problems) -> None:
         at=kind,
         found=f"the kind {tree.described(kind)}",
         accepted=f"one of {tags}" if tags else "a name",
-        nearest=nearest(str(kind), [tag.strip("'") for tag in tags.split(", ")]),
+        nearest=spelling.nearest(str(kind), [tag.strip("'") for tag in tags.split(", ")]),
     )

@@ -1,0 +1,24 @@
+"""Names in messages: the nearest known one, a found one in quotes, the accepted ones in a row."""
+
+import difflib
+from collections.abc import Iterable
+
+_LONGEST_SHOWN = 60
+
+
+def nearest(name: str, known: Iterable[str]) -> str | None:
+    """Return the known name that a misspelt one is closest to, if any is close."""
+    if len(name) > _LONGEST_SHOWN:
+        return None
+    matches = difflib.get_close_matches(name, sorted(known), n=1, cutoff=0.6)
+    return matches[0] if matches else None
+
+
+def quoted(text: str) -> str:
+    """Write a found text in quotes, cut to a length that a message can carry."""
+    return repr(text if len(text) <= _LONGEST_SHOWN else text[:_LONGEST_SHOWN] + "…")
+
+
+def choice(names: Iterable[str], *, none: str = "nothing") -> str:
+    """Write accepted names as alternatives, or say in words that there are none."""
+    return ", ".join(repr(str(name)) for name in names) or none
