@@ -51,9 +51,7 @@ def allocation(*, commons_id: int, resource: str, day: date) -> clauses.Allocati
     return _of_resource(book, resource, clauses.Allocation)
 
 
-def _of_resource(
-    book: clauses.Book, resource: str, kind: type[OfResource]
-) -> OfResource:
+def _of_resource(book: clauses.Book, resource: str, kind: type[OfResource]) -> OfResource:
     for clause in book.clauses:
         if isinstance(clause, kind) and clause.resource == resource:
             return clause

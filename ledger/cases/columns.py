@@ -50,6 +50,4 @@ def details(event: Event) -> dict[str, Any]:
 def _delivery(kept: dict[str, Any] | None) -> Delivery | None:
     if kept is None:
         return None
-    return Delivery(
-        on=date.fromisoformat(kept["on"]), means=kept["means"], proved=kept["proved"]
-    )
+    return Delivery(on=date.fromisoformat(kept["on"]), means=kept["means"], proved=kept["proved"])

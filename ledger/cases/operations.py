@@ -1,7 +1,7 @@
 """The writers of cases: the book notes, people move, and a final decision is carried out."""
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date, timedelta
 from typing import ClassVar, assert_never
 
@@ -99,7 +99,8 @@ def move(*, commons_id: int, case: int, act: Act, hand: Hand) -> CaseSoFar:
     _check_office(commons_id, act.actor, today)
     if act.move in (Move.TELL, Move.DECIDE) and not before.finding.standing:
         raise FindingWithdrawn(move=act.move, finding=before.finding.number)
-    step = queries.step_due(commons_id=commons_id, case=before, decided_on=today)
+    due = queries.step_due(commons_id=commons_id, case=before, decided_on=today)
+    step = _within_notice(commons_id, before, due)
     event = Event(
         move=act.move,
         actor=act.actor,
@@ -166,9 +167,7 @@ def _send_back(commons_id: int, case: queries.CaseRecord, hand: Hand) -> int:
     return 1
 
 
-def _advance(
-    commons_id: int, before: queries.CaseRecord, event: Event, hand: Hand
-) -> CaseSoFar:
+def _advance(commons_id: int, before: queries.CaseRecord, event: Event, hand: Hand) -> CaseSoFar:
     rules = _procedure(commons_id, event.on)
     after = procedure.advance(case=before.so_far, event=event, procedure=rules)
     became_final = after.state is State.FINAL
@@ -258,7 +257,7 @@ def _carry_out(
         case clauses.Suspension():
             first = after.final_on + timedelta(days=1)
             during = DateRange(first=first, until=first + timedelta(days=step.days))
-            for member in sorted(after.subjects):
+            for member in sorted(queries.responsible(case)):
                 yield commons.suspend(
                     commons_id=commons_id,
                     member=member,
@@ -311,6 +310,20 @@ def _undo(commons_id: int, case: queries.CaseRecord, reason: str, hand: Hand) ->
             clock=hand.clock,
             chance=hand.chance,
         )
+
+
+def _within_notice(
+    commons_id: int, case: queries.CaseRecord, due: ladder.StepDue
+) -> ladder.StepDue:
+    """Return the step due, held to what the member was told.
+
+    Whoever was told of a warning had the shorter time to answer, so no more than a warning follows.
+    """
+    if not case.so_far.proposes_warning:
+        return due
+    rungs = queries.ladder_of(commons_id=commons_id, case=case).steps[: due.index + 1]
+    index = max(at for at, step in enumerate(rungs) if isinstance(step, clauses.Warning))
+    return replace(due, index=index, step=rungs[index])
 
 
 def _amount(case: queries.CaseRecord, step: ladder.StepDue) -> int:

@@ -54,9 +54,7 @@ class CaseRecord:
 
 def cases(*, commons_id: int) -> tuple[CaseRecord, ...]:
     """Return the cases of a commons in order of number."""
-    found = {
-        each.number: each for each in judgement.latest(commons_id=commons_id).values()
-    }
+    found = {each.number: each for each in judgement.latest(commons_id=commons_id).values()}
     events: dict[int, list[models.Event]] = defaultdict(list)
     for row in models.Event.objects.filter(commons_id=commons_id).order_by("case", "place"):
         events[row.case].append(row)
@@ -99,10 +97,16 @@ def number_on_finding(*, commons_id: int, finding: int) -> int | None:
 
 
 def concerned(*, commons_id: int, finding: judgement.FindingRecord) -> frozenset[int]:
-    """Return the members whom a finding concerns: the member, or the whole household."""
-    key = finding.finding.key
+    """Return the members whom a finding concerns: the household, even where one of it acted."""
+    member = commons.members(commons_id=commons_id)[finding.finding.key.subject]
+    return commons.household_of(commons_id=commons_id, household=member.household)
+
+
+def responsible(case: CaseRecord) -> frozenset[int]:
+    """Return the members whose act a case is about: one, or a household that counts as one."""
+    key = case.finding.finding.key
     if key.subject_kind is SubjectKind.HOUSEHOLD:
-        return commons.household_of(commons_id=commons_id, household=key.subject)
+        return case.so_far.subjects
     return frozenset({key.subject})
 
 
@@ -132,7 +136,7 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
         for other in cases(commons_id=commons_id)
         if other.number != case.number
         and other.ladder == case.ladder
-        and other.so_far.subjects & case.so_far.subjects
+        and responsible(other) & responsible(case)
     ]
     return ladder.step_for(
         ladder=ladder_of(commons_id=commons_id, case=case),

@@ -214,9 +214,7 @@ def admit(*, commons_id: int, admissions: Sequence[Admission], hand: Hand) -> tu
 
 
 @transactions.required
-def give_role(
-    *, commons_id: int, member: int, role: str, during: DateRange, hand: Hand
-) -> Receipt:
+def give_role(*, commons_id: int, member: int, role: str, during: DateRange, hand: Hand) -> Receipt:
     """Record that a member holds an office.
 
     :raises UnknownRole: if the office is not one of ``ROLES``.

@@ -15,7 +15,7 @@ from ledger.foundation import transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
 from ledger.journal import operations as journal
-from ledger.journal.leaves import Draft, Receipt
+from ledger.journal.leaves import Draft, Fact, Receipt
 
 KINDS = ("catch", "index", "survey")
 
@@ -121,7 +121,7 @@ def record_inspections(
         if inspection.monitor not in monitors:
             raise NotAMonitor(found=inspection.monitor, day=day)
         commons.check_member(commons_id=commons_id, member=inspection.member)
-        seen = []
+        seen: list[Fact] = []
         for resource, given, unit in inspection.seen:
             base = commons_queries.resource(commons_id=commons_id, code=resource).base
             exact = quantities.converted(Fraction(given), from_unit=unit, to_unit=base)

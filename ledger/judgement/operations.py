@@ -98,9 +98,7 @@ def assess_duties(*, commons_id: int, during: DateRange, hand: Hand) -> Receipt 
         for member in roster.members
         if clause.head.who is None or member.is_in(clause.head.who, during.first)
     )
-    return movements.assess_duties(
-        commons_id=commons_id, duties=owed, during=during, hand=hand
-    )
+    return movements.assess_duties(commons_id=commons_id, duties=owed, during=during, hand=hand)
 
 
 @transactions.required
@@ -121,18 +119,14 @@ def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
     if judged < size:
         raise SeasonNotJudged(season=season, judged=judged, size=size)
     postings = tuple(_settling(commons_id=commons_id, season=opened))
-    return seasons.record_close(
-        commons_id=commons_id, season=season, postings=postings, hand=hand
-    )
+    return seasons.record_close(commons_id=commons_id, season=season, postings=postings, hand=hand)
 
 
 def _open_windows(*, commons_id: int, as_of: date) -> tuple[DateRange, ...]:
     """Return the windows of seasons that have begun and are not closed."""
     opened = seasons_queries.seasons(commons_id=commons_id).values()
     begun = {
-        season.during
-        for season in opened
-        if not season.closed and season.during.first <= as_of
+        season.during for season in opened if not season.closed and season.during.first <= as_of
     }
     return tuple(sorted(begun))
 
@@ -249,6 +243,4 @@ def _settling(*, commons_id: int, season: seasons_queries.SeasonRecord) -> Itera
         )
         for account, amount in lines:
             if amount:
-                yield Posting(
-                    account=account, resource=season.resource, unit=base, amount=amount
-                )
+                yield Posting(account=account, resource=season.resource, unit=base, amount=amount)

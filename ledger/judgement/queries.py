@@ -74,23 +74,23 @@ def season_facts(
 
     Allotments are as they stand now; everything else is as known up to an entry number.
     """
-    known = {"commons_id": commons_id, "up_to": up_to}
-    read = {"commons_id": commons_id, "during": during, "up_to": up_to, "members": members}
     allotments = {
         (season.resource, member): amount
         for season in seasons.seasons(commons_id=commons_id).values()
         if season.during == during
-        for member, amount in seasons.allotments(
-            commons_id=commons_id, season=season.code
-        ).items()
+        for member, amount in seasons.allotments(commons_id=commons_id, season=season.code).items()
     }
     return facts.SeasonFacts(
         season=during,
-        roster=commons.roster(**known),
-        withdrawals=movements.withdrawals(**read),
-        work=movements.work(**read),
-        money=movements.money_instead(**read),
-        orders=commons.orders(**known),
+        roster=commons.roster(commons_id=commons_id, up_to=up_to),
+        withdrawals=movements.withdrawals(
+            commons_id=commons_id, during=during, up_to=up_to, members=members
+        ),
+        work=movements.work(commons_id=commons_id, during=during, up_to=up_to, members=members),
+        money=movements.money_instead(
+            commons_id=commons_id, during=during, up_to=up_to, members=members
+        ),
+        orders=commons.orders(commons_id=commons_id, up_to=up_to),
         allotments=allotments,
     )
 

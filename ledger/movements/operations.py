@@ -135,13 +135,17 @@ def correct_withdrawal(
 
 @transactions.required
 def assess_duties(
-    *, commons_id: int, duties: Iterable[tuple[clauses.WorkDuty, int]], during: DateRange, hand: Hand
+    *,
+    commons_id: int,
+    duties: Iterable[tuple[clauses.WorkDuty, int]],
+    during: DateRange,
+    hand: Hand,
 ) -> Receipt | None:
     """Charge the members with the minutes that each duty asks of them in a season.
 
     :param duties: each duty with the number of a member who owes it.
     """
-    postings = []
+    postings: list[Posting] = []
     for clause, member in duties:
         owed = quantities.rounded(clause.days * clause.day_minutes, quantities.Rounding.HALF_UP)
         account = queries.duty_account(clause=clause.head.id, first=during.first, member=member)
@@ -172,9 +176,7 @@ def record_work(
     owed, given = _duty_accounts(commons_id, member, clause, day, "duty_worked")
     postings = _moved(owed, given, resource="work", unit="min", amount=_above_zero(minutes))
     facts: dict[str, Fact] = {"clause": clause, "minutes": minutes}
-    return _contribute(
-        commons_id, queries.WORK, member, day, facts, postings, {"task": task}, hand
-    )
+    return _contribute(commons_id, queries.WORK, member, day, facts, postings, {"task": task}, hand)
 
 
 @transactions.required

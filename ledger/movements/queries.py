@@ -32,7 +32,7 @@ class UnknownSlip(LedgerError):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class DutyStanding:
-    """What a member was assessed in a duty, gave in work, paid instead and still owes, in minutes."""
+    """What a member was assessed in a duty, gave, paid instead and still owes, in minutes."""
 
     assessed: int
     worked: int

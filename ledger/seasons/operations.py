@@ -173,9 +173,7 @@ def record_close(
         postings=postings,
         hand=hand,
     )
-    models.Close.objects.create(
-        commons_id=commons_id, season=season, entry_number=receipt.number
-    )
+    models.Close.objects.create(commons_id=commons_id, season=season, entry_number=receipt.number)
     return receipt
 
 

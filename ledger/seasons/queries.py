@@ -92,9 +92,7 @@ def season(*, commons_id: int, code: str) -> SeasonRecord:
     return opened[code]
 
 
-def holding(
-    *, opened: Mapping[str, SeasonRecord], resource: str, day: date
-) -> SeasonRecord | None:
+def holding(*, opened: Mapping[str, SeasonRecord], resource: str, day: date) -> SeasonRecord | None:
     """Return the season of a resource that a day lies in, if one does."""
     return next(
         (

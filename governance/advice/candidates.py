@@ -1,0 +1,30 @@
+"""The candidate allowables that a risk table compares: round numbers, and the ones that matter."""
+
+import math
+
+COUNT = 30
+
+
+def spread(*, named: tuple[int, ...], unit_size: int) -> tuple[int, ...]:
+    """Return 30 candidates in base units: the named ones among round ones from nought upward.
+
+    The round ones reach half again as far as the largest named one.
+
+    :param unit_size: the base units in one unit for reading; steps are round in that unit.
+    """
+    wanted = COUNT - len(set(named) - {0})
+    top = max(*named, unit_size * wanted)
+    step = _round_step(math.ceil(1.5 * top / unit_size / (wanted - 1)))
+    round_ones = [place * step * unit_size for place in range(2 * COUNT)]
+    kept = [each for each in round_ones if each not in named or each == 0][:wanted]
+    return tuple(sorted({*kept, *named}))
+
+
+def _round_step(least: int) -> int:
+    """Return the least of 1, 2, 2.5, 5 times a power of ten (as whole numbers) that reaches it."""
+    power: int = 10 ** max(0, math.floor(math.log10(least)))
+    for tenths in (10, 20, 25, 50, 100):
+        step = tenths * power // 10
+        if step >= least and tenths * power % 10 == 0:
+            return step
+    raise AssertionError("ten times the power reaches whatever its logarithm came from")

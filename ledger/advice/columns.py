@@ -1,0 +1,32 @@
+"""An advice between the row that keeps it and the record that the rules make."""
+
+import dataclasses
+import hashlib
+import json
+from datetime import date
+from typing import Any
+
+from pydantic import TypeAdapter
+
+from governance.advice.records import Advice
+
+_ADVICE = TypeAdapter(Advice)
+
+
+def plain(advice: Advice) -> dict[str, Any]:
+    """Return an advice as JSON can keep it; floats are written so that they read back the same."""
+    kept: dict[str, Any] = json.loads(
+        json.dumps(dataclasses.asdict(advice), default=date.isoformat)
+    )
+    return kept
+
+
+def advice(kept: dict[str, Any]) -> Advice:
+    """Return the advice that was kept."""
+    return _ADVICE.validate_python(kept)
+
+
+def digest(kept: dict[str, Any]) -> str:
+    """Return the SHA-256, in hex, of an advice as kept."""
+    text = json.dumps(kept, sort_keys=True, ensure_ascii=False, separators=(",", ":"))
+    return hashlib.sha256(text.encode()).hexdigest()

@@ -1,0 +1,60 @@
+"""The one way in which promised work is done: everything due at a moment, in order of its day."""
+
+import logging
+from collections.abc import Iterator
+from dataclasses import dataclass
+from datetime import timedelta
+
+from django.db import transaction
+
+from ledger.foundation import outbox
+from ledger.foundation.clocks import Chance, Clock
+from ledger.foundation.hands import THE_BOOK, Hand
+from ledger.foundation.outbox import DueJob
+from ledger.tasks.handlers import HANDLERS
+
+logger = logging.getLogger(__name__)
+
+AT_ONCE = 100
+# A job that fails rings again after so many hours for each time it failed.
+PATIENCE = timedelta(hours=1)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Drained:
+    """A job that rang: what came of it, or why it failed and will ring again."""
+
+    job: DueJob
+    outcome: str
+    failed: bool
+
+
+def drain(*, clock: Clock, chance: Chance, commons_id: int | None = None) -> Iterator[Drained]:
+    """Do the work that is due now, the longest due first, until none is left.
+
+    Each job's effect commits together with its mark, so it happens once. A job that fails leaves
+    nothing behind and rings again later.
+    """
+    while jobs := outbox.due(at=clock(), commons_id=commons_id, limit=AT_ONCE):
+        for job in jobs:
+            yield _done(job, clock=clock, chance=chance)
+
+
+def _done(job: DueJob, *, clock: Clock, chance: Chance) -> Drained:
+    hand = Hand(by=THE_BOOK, clock=clock, chance=chance)
+    try:
+        with transaction.atomic():
+            outcome = HANDLERS[job.kind](job, hand)
+            outbox.mark_done(job_id=job.id, outcome=outcome, at=clock())
+    except outbox.JobNotOpen:
+        return Drained(job=job, outcome="done by another", failed=False)
+    except Exception as error:
+        logger.exception("job %s of kind %s failed", job.id, job.kind)
+        with transaction.atomic():
+            outbox.mark_failed(
+                job_id=job.id,
+                error=f"{type(error).__name__}: {error}",
+                again_at=clock() + PATIENCE * (job.attempts + 1),
+            )
+        return Drained(job=job, outcome=str(error), failed=True)
+    return Drained(job=job, outcome=outcome, failed=False)
