@@ -10,24 +10,19 @@ drops it.
 
 import os
 import shutil
-import uuid
 from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import UTC, datetime, timedelta
 from pathlib import Path
 from typing import Any
-from urllib.parse import urlsplit
 
-import psycopg
 import pytest
 from django.db import connections
-from psycopg import sql
 
-from ledger import settings
 from ledger.foundation.clocks import Chance, seeded_chance
+from tests import databases
 
 _TEST_ON = "STINTBOOK_TEST_ON"
-_POSTGRESQL = "STINTBOOK_TEST_POSTGRESQL"
 _REQUIRE_ALL = "STINTBOOK_TEST_REQUIRE_ALL"
 
 
@@ -63,8 +58,10 @@ def pytest_configure(config: pytest.Config) -> None:
     config.addinivalue_line(
         "markers", "needs_server(variable): runs only where the variable names a server for tests"
     )
-    if _on() == "postgresql" and not os.environ.get(_POSTGRESQL):
-        raise pytest.UsageError(f"{_TEST_ON} says postgresql, and {_POSTGRESQL} names no server.")
+    if _on() == "postgresql" and not os.environ.get(databases.POSTGRESQL):
+        raise pytest.UsageError(
+            f"{_TEST_ON} says postgresql, and {databases.POSTGRESQL} names no server."
+        )
 
 
 def pytest_report_header() -> str:
@@ -88,19 +85,12 @@ def pytest_runtest_setup(item: pytest.Item) -> None:
 def django_db_modify_db_settings(tmp_path_factory: pytest.TempPathFactory) -> None:
     """Point Django at the database of this run, before pytest-django makes it."""
     if _on() == "postgresql":
-        wanted = settings.database(os.environ[_POSTGRESQL])
-        wanted["TEST"] = {"NAME": f"test_stintbook_{uuid.uuid4().hex[:12]}"}
+        address = os.environ[databases.POSTGRESQL]
+        databases.point_django(address, test_name=f"test_{databases.new_name()}")
     else:
         # A file: in memory, SQLite would heed neither the pragmas nor the kind of transaction.
         path = str(tmp_path_factory.mktemp("database") / "stintbook.sqlite3")
-        wanted = settings.database(f"sqlite:///{path}")
-        wanted["TEST"] = {"NAME": path}
-    connections["default"].close()
-    del connections["default"]
-    standing = connections.settings["default"]
-    standing.clear()
-    standing.update(wanted)
-    connections.configure_settings(connections.settings)
+        databases.point_django(f"sqlite:///{path}", test_name=path)
 
 
 @pytest.fixture
@@ -115,7 +105,12 @@ def committing_db(
         connections.close_all()
         chosen = connections["default"].settings_dict
         template = chosen["NAME"]
-        copy = _copy_postgresql(template) if _on() == "postgresql" else _copy(template, tmp_path)
+        copy = str(tmp_path / "committing.sqlite3")
+        if _on() == "postgresql":
+            copy = databases.new_name()
+            databases.create(copy, template=template)
+        else:
+            shutil.copy(template, copy)
         chosen["NAME"] = copy
         try:
             yield CommittingDatabase(address=_address(copy))
@@ -123,7 +118,7 @@ def committing_db(
             connections.close_all()
             chosen["NAME"] = template
             if _on() == "postgresql":
-                _at_server("DROP DATABASE {} WITH (FORCE)", copy)
+                databases.drop(copy)
 
 
 @pytest.fixture
@@ -146,21 +141,4 @@ def _on() -> str:
 
 
 def _address(name: str) -> str:
-    if _on() == "postgresql":
-        return urlsplit(os.environ[_POSTGRESQL])._replace(path=f"/{name}").geturl()
-    return f"sqlite:///{name}"
-
-
-def _copy(template: str, folder: Path) -> str:
-    return str(shutil.copy(template, folder / "committing.sqlite3"))
-
-
-def _copy_postgresql(template: str) -> str:
-    copy = f"{template}_{uuid.uuid4().hex[:8]}"
-    _at_server("CREATE DATABASE {} TEMPLATE {}", copy, template)
-    return copy
-
-
-def _at_server(statement: str, *names: str) -> None:
-    with psycopg.connect(os.environ[_POSTGRESQL], autocommit=True) as server:
-        server.execute(sql.SQL(statement).format(*map(sql.Identifier, names)))
+    return databases.server_address(name) if _on() == "postgresql" else f"sqlite:///{name}"

@@ -2,12 +2,15 @@
 
 from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
+from functools import lru_cache
+from itertools import chain
 from typing import Any, Protocol
 
 import psycopg
 from django.db import connection
 
 ROWS_A_STATEMENT = 500
+_TEXTS_KEPT = 256
 
 
 class Answer(Protocol):
@@ -21,6 +24,7 @@ class Answer(Protocol):
 
 
 Send = Callable[[str, Sequence[Any]], Answer]
+"""Sends a statement, whose parameters are written ``%s``, with their values."""
 
 
 @contextmanager
@@ -37,13 +41,8 @@ def together() -> Iterator[Send]:
     connection.ensure_connection()
     server: psycopg.Connection[Any] = connection.connection
     with connection.wrap_database_errors, server.pipeline():
-        yield lambda sql, parameters: psycopg.Cursor(server).execute(sql.encode(), parameters)
-
-
-def _send_at_once(sql: str, parameters: Sequence[Any]) -> Answer:
-    cursor = connection.cursor()
-    cursor.execute(sql, parameters)
-    return cursor
+        # A raw cursor leaves the text as it is; the others take it apart at every call.
+        yield lambda sql, values: psycopg.RawCursor(server).execute(_numbered(sql), values)
 
 
 def insert(
@@ -58,9 +57,27 @@ def insert(
 
     :param conflict: an ``ON CONFLICT`` clause, the same in both databases.
     """
-    one = f"({', '.join(['%s'] * len(columns))})"
     start = f"INSERT INTO {table} ({', '.join(columns)}) VALUES "
     for first in range(0, len(rows), ROWS_A_STATEMENT):
         part = rows[first : first + ROWS_A_STATEMENT]
-        values = [value for row in part for value in row]
-        send(f"{start}{', '.join([one] * len(part))} {conflict}", values)
+        values = list(chain.from_iterable(part))
+        send(_insertion(start, len(columns), len(part), conflict), values)
+
+
+def _send_at_once(sql: str, values: Sequence[Any]) -> Answer:
+    cursor = connection.cursor()
+    cursor.execute(sql, values)
+    return cursor
+
+
+@lru_cache(maxsize=_TEXTS_KEPT)
+def _insertion(start: str, width: int, height: int, conflict: str) -> str:
+    one = f"({', '.join(['%s'] * width)})"
+    return f"{start}{', '.join([one] * height)} {conflict}"
+
+
+@lru_cache(maxsize=_TEXTS_KEPT)
+def _numbered(sql: str) -> bytes:
+    """Return a statement with its parameters written ``$1``, ``$2`` …, as the server reads them."""
+    first, *others = sql.split("%s")
+    return (first + "".join(f"${at}{part}" for at, part in enumerate(others, start=1))).encode()

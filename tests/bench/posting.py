@@ -1,0 +1,14 @@
+"""One balanced entry of two postings a transaction, against the same by hand."""
+
+from tests.bench import posting_sides, rounds
+
+NAME = "posting"
+_POSTS_A_SLICE = {"small": 100, "full": 400}
+_BOUND = {"postgresql": 0.5, "sqlite": 0.5}
+
+
+def measure(*, size: str) -> rounds.Measurement:
+    """Measure ``append`` of one entry at a time."""
+    return posting_sides.measure(
+        name=NAME, size=size, transactions=_POSTS_A_SLICE[size], entries=1, bounds=_BOUND
+    )

@@ -1,0 +1,14 @@
+"""Five hundred balanced entries a transaction, against the same by hand."""
+
+from tests.bench import posting_sides, rounds
+
+NAME = "posting_batch"
+_BATCHES_A_SLICE = {"small": 1, "full": 4}
+_BOUND = {"postgresql": 0.5, "sqlite": 0.5}
+
+
+def measure(*, size: str) -> rounds.Measurement:
+    """Measure ``append`` of five hundred entries at a time."""
+    return posting_sides.measure(
+        name=NAME, size=size, transactions=_BATCHES_A_SLICE[size], entries=500, bounds=_BOUND
+    )
