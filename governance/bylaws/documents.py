@@ -127,12 +127,13 @@ def _check_id(node: tree.Mapping, ids: set[str], reading: context.Reading) -> No
 
 def _clause(node: tree.Mapping, reading: context.Reading) -> shapes.ClauseShape | None:
     kind = node.value("kind")
-    shape = clause_shapes.KINDS.get(kind) if isinstance(kind, tree.Scalar) else None
+    kinds = clause_shapes.KINDS
+    shape = kinds.get(kind) if isinstance(kind, tree.Scalar) else None
     if shape is None:
         reading.problems.add(
             at=node if kind is None else kind,
             found="no 'kind'" if kind is None else f"the kind {tree.described(kind)}",
-            accepted=f"one of {spelling.choice(clause_shapes.KINDS)}",
+            accepted=f"one of {spelling.choice(kinds)}",
             nearest=spelling.nearest(kind, clause_shapes.KINDS)
             if isinstance(kind, tree.Scalar)
             else None,
@@ -180,13 +181,17 @@ def _check_deontic(
         value = node[key]
         if key == expected and value == verb:
             continue
+        written = f"{key}: {value}" if isinstance(value, tree.Scalar) else f"{key}: …"
+        near = (
+            spelling.nearest(str(value), [verb])
+            if key == expected
+            else spelling.nearest(key, [expected])
+        )
         reading.problems.add(
-            at=key if key != expected else value,
-            found=f"'{key}: {value}'" if isinstance(value, str) else f"{key!r} with no verb",
+            at=value if key == expected else key,
+            found=spelling.quoted(written),
             accepted=accepted,
-            nearest=spelling.nearest(key, [expected])
-            if key != expected
-            else spelling.nearest(str(value), [verb]),
+            nearest=near,
         )
 
 

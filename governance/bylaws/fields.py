@@ -73,6 +73,6 @@ Basis = Annotated[clauses.Basis, PlainValidator(values.one_of(clauses.Basis))]
 Rounding = Annotated[clauses.Apportionment, PlainValidator(values.one_of(clauses.Apportionment))]
 Growth = Annotated[clauses.Growth, PlainValidator(values.one_of(clauses.Growth))]
 Order = Annotated[clauses.Sequence, PlainValidator(values.one_of(clauses.Sequence))]
-Reading4010 = Annotated[
+FortyTenReading = Annotated[
     clauses.FortyTenReading, PlainValidator(values.one_of(clauses.FortyTenReading))
 ]

@@ -16,6 +16,7 @@ from governance.bylaws.problems import Place, Problems
 
 LARGEST_BYTES = 256 * 1024
 DEEPEST = 20
+MOST_VALUES = 10_000
 
 _LINE_BREAK = re.compile(r"\r\n|\r|\n")
 # Printable in YAML, less what PyYAML takes for a line break and no editor counts as one.
@@ -120,6 +121,7 @@ class _Composer:
         self._open: list[tree.Sequence | tree.Mapping] = []
         self._keys: list[tree.Scalar | None] = []
         self._documents = 0
+        self._values = 0
 
     def take(self, event: yaml.Event) -> None:
         """Add what an event says to the tree."""
@@ -127,6 +129,7 @@ class _Composer:
         if isinstance(event, yaml.DocumentStartEvent):
             self._begin_document(place)
         elif isinstance(event, yaml.NodeEvent):
+            self._count(place)
             self._refuse_anchor_and_tag(event, place)
             self._begin(event, place)
         elif isinstance(event, yaml.CollectionEndEvent):
@@ -150,6 +153,16 @@ class _Composer:
             self._problems.add(
                 at=place, found=f"a tag {spelling.quoted(tag)}", accepted="a value, untagged"
             )
+
+    def _count(self, place: Place) -> None:
+        self._values += 1
+        if self._values > MOST_VALUES:
+            self._problems.add(
+                at=place,
+                found=f"more than {MOST_VALUES:,} keys and values",
+                accepted=f"at most {MOST_VALUES:,}",
+            )
+            raise _Stop
 
     def _begin(self, event: yaml.NodeEvent, place: Place) -> None:
         if isinstance(event, yaml.ScalarEvent):

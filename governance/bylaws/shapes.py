@@ -5,6 +5,7 @@ reports them all. A misspelt key is reported once: as misspelt, not as missing t
 """
 
 import datetime
+from collections import Counter
 from typing import Annotated, Any, ClassVar
 
 from pydantic import (
@@ -191,7 +192,7 @@ class BindingShape(ClauseShape):
 
 def once_each(names: list[str]) -> list[str]:
     """Return names of which there is at least one, and none twice."""
-    twice = sorted({name for name in names if names.count(name) > 1})
+    twice = [name for name, times in Counter(names).items() if times > 1]
     if twice:
         raise context.refusal(
             found=f"{spelling.choice(twice)} more than once", accepted="each name once"

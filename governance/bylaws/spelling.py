@@ -4,13 +4,15 @@ import difflib
 from collections.abc import Iterable
 
 _LONGEST_SHOWN = 60
+_MOST_LISTED = 20
 
 
 def nearest(name: str, known: Iterable[str]) -> str | None:
     """Return the known name that a misspelt one is closest to, if any is close."""
     if len(name) > _LONGEST_SHOWN:
         return None
-    matches = difflib.get_close_matches(name, sorted(known), n=1, cutoff=0.6)
+    short = sorted(each for each in known if len(each) <= _LONGEST_SHOWN)
+    matches = difflib.get_close_matches(name, short, n=1, cutoff=0.6)
     return matches[0] if matches else None
 
 
@@ -21,4 +23,7 @@ def quoted(text: str) -> str:
 
 def choice(names: Iterable[str], *, none: str = "nothing") -> str:
     """Write accepted names as alternatives, or say in words that there are none."""
-    return ", ".join(repr(str(name)) for name in names) or none
+    listed = [quoted(str(name)) for name in names]
+    more = len(listed) - _MOST_LISTED
+    tail = [f"and {more:,} more"] if more > 0 else []
+    return ", ".join(listed[:_MOST_LISTED] + tail) or none
