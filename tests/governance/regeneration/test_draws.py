@@ -138,6 +138,29 @@ def test_a_sharp_truth_is_found_in_a_wide_region() -> None:
     assert np.abs(held.biomass - now).max() < 1
 
 
+@pytest.mark.parametrize("order", growth.Order)
+def test_every_draw_could_bear_its_catches(order: growth.Order) -> None:
+    """The largest catch comes after the index has ended, so that only this rules a draw out."""
+    made = series.Series(
+        years=tuple(range(8)),
+        catches=(20.0, 30.0, 30.0, 30.0, 30.0, 30.0, 30.0, 190.0),
+        index=(10.0, 9.4, 8.7, 8.6, 8.0, 8.1, None, None),
+    )
+    setting = likelihood.Setting(p=1.0, order=order, timing=likelihood.IndexTiming.START_OF_YEAR)
+    fit = fitting.fit(series=made, setting=setting)
+    held = draws.plausible(fit=fit, draws=1_000, generator=np.random.default_rng(1))
+    before = draws.histories(fit=fit, draws=held)[-2]
+    there = before
+    if order is growth.Order.GROW_THEN_TAKE:
+        there = before + held.r * before * (1 - before / held.K)
+    assert (there > 190).all()
+    assert there.min() < 220
+    best = np.array([fit.biomass[-2]])
+    if order is growth.Order.GROW_THEN_TAKE:
+        best = best + fit.model.production(best)
+    assert best[0] >= 190
+
+
 def test_arrays_of_one_length_that_nobody_changes() -> None:
     held = albacore_draws()
     with pytest.raises(ValueError, match="read-only"):

@@ -1,0 +1,12 @@
+"""The risk table under Schaefer's growth, against the same in straightforward numpy."""
+
+from tests.bench import projection_sides, rounds
+
+NAME = "projection"
+# At most 0.35 of the baseline's time.
+_BOUND = 1 / 0.35
+
+
+def measure(*, size: str) -> rounds.Measurement:
+    """Measure ``under_takes`` where growth is a product."""
+    return projection_sides.measure(name=NAME, size=size, p=1.0, bound=_BOUND)
