@@ -1,0 +1,429 @@
+"""The figures of one season, as one record: every rendering of the season report reads only this.
+
+Amounts are whole numbers of the resource's base unit; the record says beside them which base that
+is and in which unit people read it. Money is in the smallest coin of the season's currency. People
+are numbers: who holds the key may put names to them, this record cannot.
+"""
+
+import dataclasses
+import hashlib
+import json
+from dataclasses import dataclass
+from datetime import date, datetime
+from fractions import Fraction
+from typing import ClassVar
+
+from ledger.foundation.errors import LedgerError
+from ledger.reports.advised import AdviceFigures
+
+
+class FiguresDisagree(LedgerError):
+    """Two figures of one record contradict each other."""
+
+    code: ClassVar[str] = "reports.figures_disagree"
+    message: ClassVar[str] = "{what} is {found}, but {other} is {expected}."
+
+
+def _agree(*, what: str, found: object, other: str, expected: object) -> None:
+    if found != expected:
+        raise FiguresDisagree(what=what, found=found, other=other, expected=expected)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class EditionFigures:
+    """The edition of the bylaw book that the season was judged under, and its adoption.
+
+    ``in_force_from`` is its first day; the votes are counts of voters.
+    """
+
+    number: int
+    in_force_from: date
+    adopted_by: str
+    adopted_on: date
+    votes_for: int
+    votes_against: int
+    votes_abstained: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DayTake:
+    """What the group took on one local day, net of reversals, in base units."""
+
+    day: date
+    amount: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class AllowableStep:
+    """The allowable in force from a day on, in base units."""
+
+    from_day: date
+    amount: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ZoneRow:
+    """What was taken from one zone: slips (a count) and amount (base units)."""
+
+    zone: str
+    slips: int
+    taken: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SettlementFigures:
+    """How a resource's season was settled, in base units, summed over the members.
+
+    ``carried`` goes into the members' next allotments, ``owed`` comes off them, ``unclaimed``
+    returned to the pool.
+    """
+
+    carried: int
+    unclaimed: int
+    owed: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ResourceFigures:
+    """The use of one resource over its season.
+
+    ``base`` and ``unit`` are the UCUM codes of the amounts as kept and as read. ``opens`` and
+    ``closes`` are the first and the last local day, both included. ``allowable`` is the one in
+    force on the last day; ``allotted`` and ``reserve`` are its parts; ``carried_in`` came from the
+    season before; ``left`` is what remained of all of it. ``daily`` holds a row for each day with a
+    take, in the order of days, and sums to ``taken``. ``members_took`` of ``members_entitled`` took
+    anything.
+
+    :raises FiguresDisagree: if the daily takes do not sum to ``taken``, or their days are not in
+        order.
+    """
+
+    code: str
+    name: str
+    base: str
+    unit: str
+    opens: date
+    closes: date
+    allowable: int
+    reserve: int
+    allotted: int
+    carried_in: int
+    taken: int
+    left: int
+    slips: int
+    members_took: int
+    members_entitled: int
+    daily: tuple[DayTake, ...]
+    allowable_steps: tuple[AllowableStep, ...]
+    zones: tuple[ZoneRow, ...]
+    settlement: SettlementFigures
+
+    def __post_init__(self) -> None:
+        _agree(
+            what=f"The sum of the daily takes of {self.code}",
+            found=sum(row.amount for row in self.daily),
+            other="the amount taken",
+            expected=self.taken,
+        )
+        days = [row.day for row in self.daily]
+        _agree(
+            what=f"The list of days of {self.code}",
+            found=days,
+            other="the same list in order",
+            expected=sorted(set(days)),
+        )
+
+    @property
+    def used(self) -> Fraction | None:
+        """Return the share of the allowable that was taken, or None where nothing was allowable."""
+        return Fraction(self.taken, self.allowable) if self.allowable else None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class HoldingFigures:
+    """One member's position in one resource, in its base unit.
+
+    ``left`` is negative where more was taken than the member had.
+    """
+
+    resource: str
+    allotment: int
+    carried_in: int
+    taken: int
+    left: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StandingRow:
+    """Where one member stands at the end of the season: by number, never by name.
+
+    Duties are in the duty's base unit, ``dues_owed`` in the smallest coin.
+    """
+
+    member: int
+    household: int
+    member_class: str
+    holdings: tuple[HoldingFigures, ...]
+    duty_owed: int
+    duty_rendered: int
+    duty_short: int
+    dues_owed: int
+    open_cases: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FindingRow:
+    """The findings of one clause: ``found`` is ``standing`` plus ``withdrawn``, all counts.
+
+    :raises FiguresDisagree: if it is not.
+    """
+
+    clause: str
+    title: str
+    found: int
+    standing: int
+    withdrawn: int
+
+    def __post_init__(self) -> None:
+        _agree(
+            what=f"The number of findings of clause {self.clause}",
+            found=self.found,
+            other="the number of standing and withdrawn ones",
+            expected=self.standing + self.withdrawn,
+        )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CaseStepRow:
+    """The cases on one step of one ladder, all counts.
+
+    ``step`` counts from 1; ``measure`` is the step in a word or two. ``opened`` is the sum of the
+    other four: set aside before a decision, decided and not overturned, overturned on appeal, and
+    not decided yet.
+
+    :raises FiguresDisagree: if it is not.
+    """
+
+    ladder: str
+    title: str
+    step: int
+    measure: str
+    opened: int
+    set_aside: int
+    upheld: int
+    overturned: int
+    undecided: int
+
+    def __post_init__(self) -> None:
+        _agree(
+            what=f"The number of cases on step {self.step} of {self.ladder}",
+            found=self.opened,
+            other="the number by outcome",
+            expected=self.set_aside + self.upheld + self.overturned + self.undecided,
+        )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CountRow:
+    """How many of something there are, under a label in words."""
+
+    label: str
+    count: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CaseFigures:
+    """The cases of the season: by ladder and step, by present state, by reason of setting aside.
+
+    The medians are in days, exact, and None where no case came so far.
+    """
+
+    steps: tuple[CaseStepRow, ...]
+    states: tuple[CountRow, ...]
+    set_aside: tuple[CountRow, ...]
+    days_act_to_told: Fraction | None
+    days_told_to_decided: Fraction | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class MoneyDueRow:
+    """Dues in money of one kind, in the smallest coin: ``open`` is not paid and not waived."""
+
+    kind: str
+    count: int
+    charged: int
+    paid: int
+    open: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RestitutionRow:
+    """What was taken too much and is given back in the resource itself, in its base unit."""
+
+    resource: str
+    count: int
+    charged: int
+    paid: int
+    open: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DutyFigures:
+    """Duties of work, summed over the members, in their base unit; ``members_short`` is a count.
+
+    ``replaced`` was answered by money instead of work, as the book allows.
+    """
+
+    base: str
+    unit: str
+    owed: int
+    rendered: int
+    replaced: int
+    short: int
+    members_short: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ReportingFigures:
+    """How long after the landing the slips were reported: counts of slips, median in hours.
+
+    ``within_48`` counts those after 24 hours and within 48.
+
+    :raises FiguresDisagree: if the three parts do not sum to ``slips``.
+    """
+
+    slips: int
+    within_24: int
+    within_48: int
+    later: int
+    median_hours: Fraction | None
+
+    def __post_init__(self) -> None:
+        _agree(
+            what="The number of slips by delay",
+            found=self.within_24 + self.within_48 + self.later,
+            other="the number of slips",
+            expected=self.slips,
+        )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class InspectionRow:
+    """Slips of one class of members: all, checked by a monitor, and checked with a difference."""
+
+    member_class: str
+    slips: int
+    checked: int
+    differences: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OrderRow:
+    """An outside authority's order: ``until`` is the first day it no longer holds, or None."""
+
+    authority: str
+    resource: str
+    zones: tuple[str, ...]
+    from_day: date
+    until: date | None
+    reason: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ObservationRow:
+    """One reading of the resource: an exact value in a unit (``1`` for an index without one)."""
+
+    resource: str
+    kind: str
+    zone: str
+    day: date
+    value: Fraction
+    unit: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class NextSeasonRow:
+    """The next season of one resource as adopted, in its base unit.
+
+    The last three fields are the smallest, the median (rounded down) and the largest allotment
+    among ``holders`` members.
+    """
+
+    resource: str
+    opens: date
+    closes: date
+    adopted_by: str
+    adopted_on: date
+    allowable: int
+    reserve: int
+    allotted: int
+    holders: int
+    smallest: int
+    median: int
+    largest: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SeasonFigures:
+    """Everything that the season report states.
+
+    ``made_at`` is the aware moment of making, shown in the time zone ``zone``; ``proof`` is the
+    proof line of the journal's head that the figures rest on; ``currency`` is an ISO 4217 code.
+    ``cautions`` are the sentences that the reader must see.
+
+    :raises FiguresDisagree: if a row names a resource that the record does not hold.
+    """
+
+    commons: str
+    season: str
+    made_at: datetime
+    zone: str
+    proof: str
+    currency: str
+    edition: EditionFigures
+    resources: tuple[ResourceFigures, ...]
+    findings: tuple[FindingRow, ...]
+    cases: CaseFigures
+    dues: tuple[MoneyDueRow, ...]
+    restitution: tuple[RestitutionRow, ...]
+    duties: DutyFigures | None
+    reporting: ReportingFigures
+    inspections: tuple[InspectionRow, ...]
+    standings: tuple[StandingRow, ...]
+    orders: tuple[OrderRow, ...]
+    observations: tuple[ObservationRow, ...]
+    advice: tuple[AdviceFigures, ...]
+    next_season: tuple[NextSeasonRow, ...]
+    cautions: tuple[str, ...]
+
+    def __post_init__(self) -> None:
+        assert self.made_at.tzinfo is not None, "a moment without a zone names no moment"
+        known = {resource.code for resource in self.resources}
+        named = {
+            row.resource
+            for rows in (self.restitution, self.orders, self.observations, self.next_season)
+            for row in rows
+        }
+        named |= {row.resource for row in self.advice}
+        named |= {held.resource for row in self.standings for held in row.holdings}
+        _agree(
+            what="The list of resources that rows name",
+            found=sorted(named | known),
+            other="the list of resources of the report",
+            expected=sorted(known),
+        )
+
+    def resource(self, code: str) -> ResourceFigures:
+        """Return the use of the resource of a code, which the record is known to hold."""
+        return next(row for row in self.resources if row.code == code)
+
+
+def digest(figures: SeasonFigures) -> str:
+    """Return the SHA-256 of the figures in hex; the moment of making is left out.
+
+    Two reports from the same entries carry the same digest, whenever they were made.
+    """
+    record = dataclasses.asdict(figures)
+    del record["made_at"]
+    text = json.dumps(record, sort_keys=True, ensure_ascii=False, default=str)
+    return hashlib.sha256(text.encode()).hexdigest()

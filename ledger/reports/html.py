@@ -1,0 +1,31 @@
+"""The season report as one HTML file that asks for nothing from outside itself."""
+
+import base64
+from pathlib import Path
+
+from django.template import Context, Engine
+
+from ledger.reports import sections
+from ledger.reports.figures import SeasonFigures
+from ledger.reports.outline import Chart, Section
+
+TEMPLATES = Path(__file__).parent / "templates"
+
+
+def season_html(figures: SeasonFigures, /) -> str:
+    """Return the season report as a page: charts, style and all in the one file."""
+    report = sections.report(figures)
+    # Its own engine: the page is a document, whatever the settings say of the site's templates.
+    engine = Engine(dirs=[str(TEMPLATES)])
+    page = engine.get_template("season.html")
+    shown = {"report": report, "sections": map(_drawn, report.sections)}
+    return page.render(Context(shown, use_l10n=False))
+
+
+def _drawn(section: Section) -> tuple[Section, list[tuple[Chart, str]]]:
+    return section, [(chart, _address(chart)) for chart in section.charts]
+
+
+def _address(chart: Chart) -> str:
+    """Return a chart as a data address: an image cannot leak its style or its names to the page."""
+    return "data:image/svg+xml;base64," + base64.b64encode(chart.svg.encode()).decode()

@@ -1,0 +1,197 @@
+"""The tables of the resource: what was observed, what is estimated, and the risk table."""
+
+import bisect
+import math
+
+from ledger.reports import numbers, outline
+from ledger.reports.advised import AdviceFigures, EstimateRow, RiskRow, StockHistory
+from ledger.reports.figures import ResourceFigures, SeasonFigures
+from ledger.reports.outline import Cell, Sheet, Table
+
+# Chances from which a cell is a shade darker; the first is where people count 1 in 20.
+_FILL_FROM = (0.025, 0.1, 0.25, 0.5)
+
+
+def proposal(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+    """Return the step from the present allowable to the proposed one."""
+    steps = (
+        ("Allowable of this season", advice.present),
+        ("What the rule alone gives", advice.before_bounds),
+        ("Proposed allowable", advice.proposed),
+    )
+    return Table(
+        sheet=Sheet.ADVICE,
+        caption=f"From the present allowable of {resource.name} to the proposed one",
+        columns=("", numbers.unit_word(resource.unit)),
+        rows=outline.aligned(
+            (
+                outline.text(label),
+                outline.amount(value, base=resource.base, unit=resource.unit),
+            )
+            for label, value in steps
+        ),
+        empty="",
+    )
+
+
+def estimates(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+    """Return what was estimated about the resource, and the reference points."""
+    return Table(
+        sheet=Sheet.ADVICE,
+        caption=f"What is estimated about {resource.name}",
+        columns=("Name", "Meaning", "Value", "Low", "High", "Unit"),
+        rows=tuple(map(_estimate, advice.estimates + advice.reference_points)),
+        empty="Nothing was estimated.",
+        note=f"Low and high: {advice.interval}." if advice.interval else "",
+    )
+
+
+def _estimate(row: EstimateRow) -> tuple[Cell, ...]:
+    return (
+        outline.text(row.name),
+        outline.text(row.meaning),
+        outline.estimate(row.value),
+        outline.estimate(row.low),
+        outline.estimate(row.high),
+        outline.text(numbers.unit_word(row.unit)),
+    )
+
+
+def risk(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+    """Return the candidates in the order of their size; a frame marks a broken threshold."""
+    table = advice.risk
+    if table is None:
+        return Table(
+            sheet=Sheet.RISK,
+            caption=f"Risk table of {resource.name}",
+            columns=(),
+            rows=(),
+            empty="The method of this advice runs no simulations, so it has no risk table.",
+        )
+    unit = numbers.unit_word(resource.unit)
+    rows = sorted(table.rows, key=lambda row: row.candidate)
+    return Table(
+        sheet=Sheet.RISK,
+        caption=f"Risk table of {resource.name}: what follows from each allowable",
+        columns=(
+            f"Allowable, {unit}",
+            "What it is",
+            f"Chance of falling below {table.limit_words} within {table.horizon_years} years",
+            f"Chance that {table.cut_words}",
+            f"Mean take a year, {unit}",
+            f"Median stock at the end, {unit}",
+        ),
+        rows=tuple(_risk(row, resource=resource) for row in rows),
+        empty="No candidate was tried.",
+        note=_risk_note(advice, resource=resource),
+    )
+
+
+def _risk(row: RiskRow, *, resource: ResourceFigures) -> tuple[Cell, ...]:
+    mean_take, end = (
+        outline.rough_amount(value, base=resource.base, unit=resource.unit)
+        for value in (row.mean_take, row.end_median)
+    )
+    return (
+        outline.amount(row.candidate, base=resource.base, unit=resource.unit),
+        outline.text(row.label),
+        _chance(row.chance_below, framed=row.breaks),
+        _chance(row.chance_cut, framed=False),
+        mean_take,
+        end,
+    )
+
+
+def _chance(probability: float, *, framed: bool) -> Cell:
+    return Cell(
+        kind=outline.Kind.PERCENT,
+        text=numbers.chance(probability),
+        value=probability,
+        fill=bisect.bisect(_FILL_FROM, probability),
+        framed=framed,
+    )
+
+
+def _risk_note(advice: AdviceFigures, *, resource: ResourceFigures) -> str:
+    table = advice.risk
+    assert table is not None
+    limit = numbers.rough_amount(table.limit, base=resource.base, unit=resource.unit)
+    # The widest half-interval of a share seen in so many independent runs, at 95 %.
+    error = 1.96 * 0.5 / math.sqrt(table.runs)
+    sentences = [f"The level is {limit}."]
+    if table.at_most is not None:
+        sentences.append(
+            f"The book accepts a chance of at most {numbers.percent(table.at_most)};"
+            " a bold frame marks a chance beyond it. A darker cell is a greater chance."
+        )
+    sentences.append(
+        f"Every row was tried on the same {table.runs:,} runs; the counting alone leaves a chance"
+        f" uncertain by at most {numbers.tenths(error * 100)} points of a hundred."
+    )
+    return " ".join(sentences)
+
+
+def stock(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+    """Return the stock by year: observed, median and bands."""
+    history = advice.stock
+    return Table(
+        sheet=Sheet.STOCK,
+        caption=f"Stock of {resource.name} by year, {numbers.unit_word(resource.unit)}",
+        columns=("Year", "How known", "Observed", "Median", *("Low", "High") * 3),
+        groups=(("", 4), ("50 of 100 runs", 2), ("80 of 100 runs", 2), ("95 of 100 runs", 2)),
+        rows=() if history is None else _stock_rows(history, resource=resource),
+        empty="The method of this advice estimates no course of the stock.",
+    )
+
+
+def _stock_rows(
+    history: StockHistory, *, resource: ResourceFigures
+) -> tuple[tuple[Cell, ...], ...]:
+    def amount(value: int) -> Cell:
+        return outline.rough_amount(value, base=resource.base, unit=resource.unit)
+
+    observed = {row.year: row.amount for row in history.observed}
+    bands = {row.year: row for row in history.bands}
+    rows = []
+    for year in sorted(observed.keys() | bands.keys()):
+        band = bands.get(year)
+        rows.append(
+            (
+                outline.label_number(year),
+                outline.text("projected" if year >= history.first_projected else "estimated"),
+                amount(observed[year]) if year in observed else outline.blank(),
+                *(
+                    (outline.blank(),) * 7
+                    if band is None
+                    else map(
+                        amount,
+                        (
+                            *(band.median, band.low_50, band.high_50),
+                            *(band.low_80, band.high_80, band.low_95, band.high_95),
+                        ),
+                    )
+                ),
+            )
+        )
+    return tuple(rows)
+
+
+def observations(figures: SeasonFigures) -> Table:
+    """Return the readings of the resources."""
+    return Table(
+        sheet=Sheet.OBSERVATIONS,
+        caption="Observations of the resources",
+        columns=("Resource", "Kind", "Zone", "Day", "Value", "Unit"),
+        rows=tuple(
+            (
+                outline.text(figures.resource(row.resource).name),
+                outline.text(row.kind),
+                outline.text(row.zone),
+                outline.day(row.day),
+                outline.exact(row.value),
+                outline.text(numbers.unit_word(row.unit)),
+            )
+            for row in figures.observations
+        ),
+        empty="No observation is recorded.",
+    )
