@@ -25,14 +25,15 @@ class RiskRow:
     the end of a season: ``below_by_season`` in each, ``below_ever`` in any, ``below_at_end`` in the
     last. ``short_ever`` is the chance that some take cannot be had in full; ``cut_next`` that the
     rule allows less after the first season than was allowed in it. ``mean_take`` is over draws and
-    seasons. ``lowest_season``, counted from 0, is the one that ends with the lowest mean biomass,
-    which is ``lowest_biomass``.
+    seasons; ``end_median`` is the median biomass at the end of the last season. ``lowest_season``,
+    counted from 0, is the one that ends with the lowest mean biomass, which is ``lowest_biomass``.
     """
 
     candidate: float | None
     below_by_season: tuple[float, ...]
     below_ever: float
     below_at_end: float
+    end_median: float
     short_ever: float
     cut_next: float
     mean_take: float
@@ -135,6 +136,7 @@ class _Tally:
         self.biomass: FloatArray = np.zeros(seasons)
         self.ever: NDArray[np.bool_] = np.zeros(draws, dtype=np.bool_)
         self.short: NDArray[np.bool_] = np.zeros(draws, dtype=np.bool_)
+        self.last: FloatArray = np.zeros(draws)
         self.taken = 0.0
         self.cut = 0
 
@@ -146,6 +148,7 @@ class _Tally:
             below_by_season=below,
             below_ever=np.count_nonzero(self.ever) / count,
             below_at_end=below[-1],
+            end_median=float(np.median(self.last)),
             short_ever=np.count_nonzero(self.short) / count,
             cut_next=self.cut / count,
             mean_take=self.taken / (count * seasons),
@@ -187,6 +190,7 @@ def _count(
         ever |= np.less(biomass, limit, out=mask)
         tally.below[season] += np.count_nonzero(mask)
         tally.biomass[season] += biomass.sum()
+    tally.last[block.rows] = biomass
 
 
 def _total(allowed: float | FloatArray, count: int) -> float:

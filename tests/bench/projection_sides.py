@@ -49,7 +49,8 @@ def agree(case: "Case") -> None:
         case.by_the_program(), case.by_hand(), strict=True
     ):
         assert (*row.below_by_season, row.below_ever, row.short_ever, row.cut_next) == chances
-        np.testing.assert_allclose((row.mean_take, row.lowest_biomass), means, rtol=1e-9)
+        ours = (row.mean_take, row.lowest_biomass, row.end_median)
+        np.testing.assert_allclose(ours, means, rtol=1e-9)
         assert row.lowest_season == lowest_season
 
 
@@ -87,8 +88,8 @@ class Case:
             order=growth.Order.GROW_THEN_TAKE,
         )
 
-    def by_hand(self) -> list[tuple[tuple[float, ...], tuple[float, float], int]]:
-        """Return chances, mean take and lowest mean biomass, and lowest season by candidate."""
+    def by_hand(self) -> list[tuple[tuple[float, ...], tuple[float, float, float], int]]:
+        """Return chances, the three means and medians, and the lowest season by candidate."""
         r, K, p = self.ahead.draws.r, self.ahead.draws.K, self.ahead.draws.p
         take = self.candidates[:, np.newaxis]
         biomass = np.tile(self.ahead.draws.biomass, (len(take), 1))
@@ -109,10 +110,10 @@ class Case:
             means.append(biomass.mean(axis=1))
             taken.append(got.mean(axis=1))
         chances = np.vstack((*below, ever.mean(axis=1), short.mean(axis=1), cut)).T
-        mean_takes, lowest = np.mean(taken, axis=0), np.min(means, axis=0)
+        middles = (np.mean(taken, axis=0), np.min(means, axis=0), np.median(biomass, axis=1))
         return [
-            (tuple(each.tolist()), (float(mean_take), float(least)), int(season))
-            for each, mean_take, least, season in zip(
-                chances, mean_takes, lowest, np.argmin(means, axis=0), strict=True
+            (tuple(each.tolist()), (float(mean_take), float(least), float(end)), int(season))
+            for each, mean_take, least, end, season in zip(
+                chances, *middles, np.argmin(means, axis=0), strict=True
             )
         ]

@@ -1,6 +1,7 @@
 """Risk rows and fans, against a plain loop over draws and seasons written out here."""
 
 import dataclasses
+import statistics
 
 import numpy as np
 import pytest
@@ -61,6 +62,7 @@ def counted_by_hand(ahead: prospects.Prospects, candidate: float | None) -> proj
         below_by_season=tuple(by_season.tolist()),
         below_ever=below.any(axis=0).sum() / count,
         below_at_end=by_season[-1],
+        end_median=statistics.median(biomass[-1].tolist()),
         short_ever=short.sum() / count,
         cut_next=cuts / count,
         mean_take=taken / count / seasons,
@@ -73,6 +75,7 @@ def assert_same(found: projection.RiskRow, expected: projection.RiskRow) -> None
     exact = ("candidate", "lowest_season", "below_by_season", "below_ever", "below_at_end")
     for name in (*exact, "short_ever", "cut_next"):
         assert getattr(found, name) == getattr(expected, name), name
+    assert found.end_median == pytest.approx(expected.end_median, rel=1e-9)
     assert found.mean_take == pytest.approx(expected.mean_take, rel=1e-9)
     assert found.lowest_biomass == pytest.approx(expected.lowest_biomass, rel=1e-9)
 
