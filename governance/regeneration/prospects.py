@@ -115,9 +115,10 @@ def _grower(*, p: float, r: FloatArray, K: FloatArray) -> Callable[[FloatArray, 
         return grow_schaefer
 
     inverse, pull = 1 / K, r if p == 0 else r / p
+    least = np.full_like(K, growth.NEXT_TO_NOTHING)
 
     def grow_bent(now: FloatArray, after: FloatArray) -> None:
-        np.maximum(now, growth.NEXT_TO_NOTHING, out=after)
+        np.maximum(now, least, out=after)
         np.multiply(after, inverse, out=after)
         np.log(after, out=after)
         if p != 0:
@@ -150,19 +151,20 @@ class Season:
 def seasons_of(block: Block, policy: Policy, order: growth.Order) -> Iterator[Season]:
     """Yield the seasons of a run of draws, one after the other, in arrays used in turn."""
     now = block.start.copy()
-    after, spare = np.empty_like(now), np.empty_like(now)
+    # A minimum of two arrays takes half the time of a minimum of an array and a number.
+    after, spare, nothing = np.empty_like(now), np.empty_like(now), np.zeros_like(now)
     for luck in block.luck:
         allowed = (
             policy if isinstance(policy, int | float) else rules.take(rule=policy, biomass=now)
         )
         match order:
             case growth.Order.TAKE_THEN_GROW:
-                lack = _withdraw(now, allowed, spare)
+                lack = _withdraw(now, allowed, spare, nothing)
                 block.grow(now, after)
-                np.maximum(after, 0.0, out=after)
+                np.maximum(after, nothing, out=after)
             case growth.Order.GROW_THEN_TAKE:
                 block.grow(now, after)
-                lack = _withdraw(after, allowed, spare)
+                lack = _withdraw(after, allowed, spare, nothing)
             case _:
                 assert_never(order)
         np.multiply(after, luck, out=after)
@@ -171,14 +173,14 @@ def seasons_of(block: Block, policy: Policy, order: growth.Order) -> Iterator[Se
 
 
 def _withdraw(
-    stock: FloatArray, allowed: float | FloatArray, spare: FloatArray
+    stock: FloatArray, allowed: float | FloatArray, spare: FloatArray, nothing: FloatArray
 ) -> FloatArray | None:
     """Take from a stock in place, at most what is there; return the lack, written to spare."""
     np.subtract(stock, allowed, out=stock)
     lowest = stock.min()
     if lowest >= 0:
         return None
-    lack = np.minimum(stock, 0.0, out=spare)
+    lack = np.minimum(stock, nothing, out=spare)
     np.subtract(stock, lack, out=stock)
     # A stock far above K can fall below zero by itself: that is no part of the take.
     if np.any(lowest < np.negative(allowed)):
