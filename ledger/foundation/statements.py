@@ -1,7 +1,7 @@
 """Statements in plain SQL, sent with as few round trips as the database allows."""
 
-from collections.abc import Callable, Iterator, Sequence
-from contextlib import contextmanager
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 from functools import lru_cache
 from itertools import chain
 from typing import Any, Protocol
@@ -10,11 +10,13 @@ import psycopg
 from django.db import connection
 
 ROWS_A_STATEMENT = 500
+# PostgreSQL takes 65,535 values in one statement, SQLite 32,766.
+_VALUES_A_STATEMENT = 30_000
 _TEXTS_KEPT = 256
 
 
 class Answer(Protocol):
-    """The rows that a statement gave; read them after the block that sent it."""
+    """The rows that a statement gave."""
 
     def fetchone(self) -> Any:
         """Return the next row or None."""
@@ -23,57 +25,81 @@ class Answer(Protocol):
         """Return every remaining row."""
 
 
-Send = Callable[[str, Sequence[Any]], Answer]
-"""Sends a statement, whose parameters are written ``%s``, with their values."""
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Statement:
+    """One statement, its parameters written ``%s``, and their values."""
+
+    sql: str
+    values: Sequence[Any]
 
 
-@contextmanager
-def together() -> Iterator[Send]:
-    """Yield a function that sends a statement; read answers when the block has ended.
+def run(statement: Statement) -> Answer:
+    """Run one statement and return its answer."""
+    if connection.vendor == "postgresql":
+        connection.ensure_connection()
+        server: psycopg.Connection[Any] = connection.connection
+        with connection.wrap_database_errors:
+            # A raw cursor leaves the text as it is; others take it apart at every call.
+            return psycopg.RawCursor(server).execute(_numbered(statement.sql), statement.values)
+    cursor = connection.cursor()
+    cursor.execute(statement.sql, statement.values)
+    return cursor
 
-    On PostgreSQL the block is one pipeline: its statements run in order, each seeing what the
-    ones before it did, and cost one round trip together. A database error of any of them is
-    raised when the block ends.
+
+def run_together(*, statements: Sequence[Statement]) -> None:
+    """Run statements that write to different tables, and need no answer.
+
+    PostgreSQL gets them as parts of one statement, so that they cost one round trip; they see the
+    tables as they stood before it.
     """
     if connection.vendor != "postgresql":
-        yield _send_at_once
+        for statement in statements:
+            run(statement)
         return
-    connection.ensure_connection()
-    server: psycopg.Connection[Any] = connection.connection
-    with connection.wrap_database_errors, server.pipeline():
-        # A raw cursor leaves the text as it is; the others take it apart at every call.
-        yield lambda sql, values: psycopg.RawCursor(server).execute(_numbered(sql), values)
+    for part in _parts(statements):
+        *others, last = part
+        steps = ", ".join(f"step_{at} AS ({one.sql})" for at, one in enumerate(others))
+        sql = f"WITH {steps} {last.sql}" if steps else last.sql
+        run(Statement(sql=sql, values=list(chain.from_iterable(one.values for one in part))))
 
 
-def insert(
-    send: Send,
+def insertions(
     *,
     table: str,
     columns: Sequence[str],
     rows: Sequence[Sequence[Any]],
     conflict: str = "",
-) -> None:
-    """Send the insertion of rows, many of them in one statement.
+) -> Iterator[Statement]:
+    """Yield the statements that insert rows, hundreds of rows in each.
 
     :param conflict: an ``ON CONFLICT`` clause, the same in both databases.
     """
     start = f"INSERT INTO {table} ({', '.join(columns)}) VALUES "
     for first in range(0, len(rows), ROWS_A_STATEMENT):
         part = rows[first : first + ROWS_A_STATEMENT]
-        values = list(chain.from_iterable(part))
-        send(_insertion(start, len(columns), len(part), conflict), values)
+        yield Statement(
+            sql=_insertion(start, len(columns), len(part), conflict),
+            values=list(chain.from_iterable(part)),
+        )
 
 
-def _send_at_once(sql: str, values: Sequence[Any]) -> Answer:
-    cursor = connection.cursor()
-    cursor.execute(sql, values)
-    return cursor
+def _parts(statements: Sequence[Statement]) -> Iterator[list[Statement]]:
+    part: list[Statement] = []
+    count = 0
+    for statement in statements:
+        if part and count + len(statement.values) > _VALUES_A_STATEMENT:
+            yield part
+            part, count = [], 0
+        part.append(statement)
+        count += len(statement.values)
+    if part:
+        yield part
 
 
 @lru_cache(maxsize=_TEXTS_KEPT)
 def _insertion(start: str, width: int, height: int, conflict: str) -> str:
     one = f"({', '.join(['%s'] * width)})"
-    return f"{start}{', '.join([one] * height)} {conflict}"
+    return f"{start}{', '.join([one] * height)} {conflict}".rstrip()
 
 
 @lru_cache(maxsize=_TEXTS_KEPT)

@@ -192,16 +192,27 @@ def balance(*, commons_id: int, account: str, resource: str, unit: str) -> int:
     return amount or 0
 
 
-def balances(*, commons_id: int, prefix: str) -> dict[tuple[str, str, str], int]:
-    """Return what stands now on the accounts that begin so, by (account, resource, unit)."""
+def balances(
+    *, commons_id: int, prefix: str, up_to: int | None = None
+) -> dict[tuple[str, str, str], int]:
+    """Return what stands on the accounts that begin so, by (account, resource, unit).
+
+    With ``up_to`` as known at that entry, from the postings; without, now, from the balances.
+    """
+    named = {"commons_id": commons_id, "account__startswith": prefix}
+    columns_read = ("account", "resource", "unit", "amount")
+    if up_to is None:
+        found = models.Balance.objects.filter(**named).values_list(*columns_read)
+    else:
+        found = (
+            models.Posting.objects.filter(**named, number__lte=up_to)
+            .values_list("account", "resource", "unit")
+            .annotate(total=Sum("amount"))
+        )
     # SQLite compares beginnings without regard to case; the exact comparison is made here.
     return {
-        (account, resource, unit): amount
-        for account, resource, unit, amount in models.Balance.objects.filter(
-            commons_id=commons_id, account__startswith=prefix
-        )
-        .order_by("account", "resource", "unit")
-        .values_list("account", "resource", "unit", "amount")
+        (account, resource, unit): int(amount)
+        for account, resource, unit, amount in found.order_by("account", "resource", "unit")
         if account.startswith(prefix)
     }
 

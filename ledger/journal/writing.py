@@ -2,7 +2,7 @@
 
 import json
 from collections import defaultdict
-from collections.abc import Collection, Mapping, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import UTC, date, datetime
 from typing import Any
@@ -11,6 +11,7 @@ from django.db import connection
 
 from ledger.foundation import statements
 from ledger.foundation.clocks import Chance
+from ledger.foundation.statements import Statement
 from ledger.journal import columns, leaves, models, tree
 
 _KEYS_A_STATEMENT = 500
@@ -60,27 +61,17 @@ def lock(
     The keys are looked up by statements of their own after the lock, so that they see what the
     writer before this one committed.
     """
-    with statements.together() as send:
-        locked = send(
-            "SELECT journal_id, size, root, edge, recorded_at, broken FROM journal_head"
+    row = statements.run(
+        Statement(
+            sql="SELECT journal_id, size, root, edge, recorded_at, broken FROM journal_head"
             f" WHERE commons_id = %s {_for_update()}",
-            [commons_id],
+            values=[commons_id],
         )
-        found = [
-            send(
-                "SELECT device, key, number FROM journal_entry WHERE commons_id = %s"
-                # Said again so that the partial index can serve.
-                " AND device = %s AND NOT key = ''"
-                f" AND key IN ({', '.join(['%s'] * len(part))})",
-                [commons_id, device, *part],
-            )
-            for device, wanted in keys.items()
-            for part in _parts(sorted(wanted))
-        ]
-    row = locked.fetchone()
-    standing = {
-        (device, key): number for answer in found for device, key, number in answer.fetchall()
-    }
+    ).fetchone()
+    standing: dict[tuple[str, str], int] = {}
+    for device, wanted in keys.items():
+        for part in _parts(sorted(wanted)):
+            standing |= _standing(commons_id, device, part)
     return (None if row is None else _head(commons_id, row)), standing
 
 
@@ -123,67 +114,69 @@ def write(
         recorded_at=recorded_at,
         broken=head.broken,
     )
-    with statements.together() as send:
-        for table, names, rows, conflict in _insertions(head.commons_id, sealed, by, recorded_at):
-            statements.insert(send, table=table, columns=names, rows=rows, conflict=conflict)
-        send(
-            "UPDATE journal_head SET size = %s, root = %s, edge = %s, recorded_at = %s"
-            " WHERE commons_id = %s",
-            [grown.size, grown.root, b"".join(edge), _instant(recorded_at), head.commons_id],
-        )
+    update = Statement(
+        sql="UPDATE journal_head SET size = %s, root = %s, edge = %s, recorded_at = %s"
+        " WHERE commons_id = %s",
+        values=[grown.size, grown.root, b"".join(edge), _instant(recorded_at), head.commons_id],
+    )
+    insertions = _insertions(head.commons_id, sealed, by, recorded_at)
+    statements.run_together(statements=[*insertions, update])
     _write_tiles(head, hashes)
     return grown
 
 
+def _standing(commons_id: int, device: str, keys: Sequence[str]) -> dict[tuple[str, str], int]:
+    answer = statements.run(
+        Statement(
+            # That a key is not empty is said again so that the partial index can serve.
+            sql="SELECT key, number FROM journal_entry WHERE commons_id = %s AND device = %s"
+            f" AND NOT key = '' AND key IN ({', '.join(['%s'] * len(keys))})",
+            values=[commons_id, device, *keys],
+        )
+    )
+    return {(device, key): number for key, number in answer.fetchall()}
+
+
 def _insertions(
     commons_id: int, sealed: Sequence[SealedDraft], by: int, recorded_at: datetime
-) -> tuple[tuple[str, Sequence[str], list[tuple[Any, ...]], str], ...]:
-    sums = fold([one.draft for one in sealed])
+) -> Iterator[Statement]:
     at = _instant(recorded_at)
-    return (
-        (
-            "journal_entry",
-            _ENTRY_COLUMNS,
-            [_entry_row(commons_id, one, by, at) for one in sealed],
-            "",
-        ),
-        (
-            "journal_posting",
-            _POSTING_COLUMNS,
-            [
-                (
-                    commons_id,
-                    one.number,
-                    line,
-                    posting.account,
-                    posting.resource,
-                    posting.unit,
-                    posting.amount,
-                    _day(one.draft.day),
-                )
-                for one in sealed
-                for line, posting in enumerate(one.draft.postings)
-            ],
-            "",
-        ),
-        (
-            "journal_balance",
-            _BALANCE_COLUMNS,
-            [(commons_id, *names, amount) for names, amount in sorted(sums.items())],
-            "ON CONFLICT (commons_id, account, resource, unit)"
-            " DO UPDATE SET amount = journal_balance.amount + excluded.amount",
-        ),
-        (
-            "journal_text",
-            _TEXT_COLUMNS,
-            [
-                (commons_id, one.number, name, text, one.text_salts[name])
-                for one in sealed
-                for name, text in one.draft.texts.items()
-            ],
-            "",
-        ),
+    yield from statements.insertions(
+        table="journal_entry",
+        columns=_ENTRY_COLUMNS,
+        rows=[_entry_row(commons_id, one, by, at) for one in sealed],
     )
+    yield from statements.insertions(
+        table="journal_posting",
+        columns=_POSTING_COLUMNS,
+        rows=[row for one in sealed for row in _posting_rows(commons_id, one)],
+    )
+    sums = fold([one.draft for one in sealed])
+    yield from statements.insertions(
+        table="journal_balance",
+        columns=_BALANCE_COLUMNS,
+        rows=[(commons_id, *names, amount) for names, amount in sorted(sums.items())],
+        conflict="ON CONFLICT (commons_id, account, resource, unit)"
+        " DO UPDATE SET amount = journal_balance.amount + excluded.amount",
+    )
+    yield from statements.insertions(
+        table="journal_text",
+        columns=_TEXT_COLUMNS,
+        rows=[
+            (commons_id, one.number, name, text, one.text_salts[name])
+            for one in sealed
+            for name, text in one.draft.texts.items()
+        ],
+    )
+
+
+def _posting_rows(commons_id: int, one: SealedDraft) -> Iterator[tuple[Any, ...]]:
+    day = _day(one.draft.day)
+    for line, posting in enumerate(one.draft.postings):
+        yield (
+            *(commons_id, one.number, line, posting.account, posting.resource, posting.unit),
+            *(posting.amount, day),
+        )
 
 
 def _entry_row(commons_id: int, one: SealedDraft, by: int, recorded_at: Any) -> tuple[Any, ...]:
