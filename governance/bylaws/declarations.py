@@ -31,8 +31,15 @@ def _resources(node: tree.Node | None) -> dict[str, str | None] | None:
 
 
 def _base(units: tree.Node) -> str | None:
-    base = units.value("base") if isinstance(units, tree.Mapping) else None
-    return str(base) if isinstance(base, tree.Scalar) and base in quantities.UNITS else None
+    if not isinstance(units, tree.Mapping):
+        return None
+    known = [
+        quantities.UNITS[code]
+        for code in (units.value("unit"), units.value("base"))
+        if isinstance(code, tree.Scalar) and code in quantities.UNITS
+    ]
+    agreed = len(known) == 2 and known[0].measures == known[1].measures
+    return known[1].code if agreed else None
 
 
 def _classes(node: tree.Node | None) -> frozenset[str] | None:

@@ -10,6 +10,7 @@ from governance.bylaws import (
     clauses,
     context,
     declarations,
+    deontics,
     ladder_shapes,
     markup,
     quota_shapes,
@@ -19,8 +20,6 @@ from governance.bylaws import (
     validation,
 )
 from governance.bylaws.problems import Problems
-
-_DEONTICS = ("must", "must_not", "may")
 
 
 def read(*, text: str, name: str) -> clauses.Book:
@@ -134,65 +133,11 @@ def _clause(node: tree.Mapping, reading: context.Reading) -> shapes.ClauseShape 
             at=node if kind is None else kind,
             found="no 'kind'" if kind is None else f"the kind {tree.described(kind)}",
             accepted=f"one of {spelling.choice(kinds)}",
-            nearest=spelling.nearest(kind, clause_shapes.KINDS)
-            if isinstance(kind, tree.Scalar)
-            else None,
+            nearest=spelling.nearest(str(kind), kinds) if kind is not None else None,
         )
         return None
-    rest = _without_deontic(node, shape, str(kind), reading)
+    rest = deontics.checked(node=node, shape=shape, reading=reading)
     return validation.validated(shape=shape, node=rest, reading=reading)
-
-
-def _without_deontic(
-    node: tree.Mapping, shape: type[shapes.ClauseShape], kind: str, reading: context.Reading
-) -> tree.Mapping:
-    """Check the clause's *must*, *must not* or *may*; return the clause without it."""
-    said = [key for key in node if key in _DEONTICS or _is_deontic_misspelt(key, shape)]
-    if shape.deontic is None:
-        for key in said:
-            reading.problems.add(
-                at=key,
-                found=f"the key {spelling.quoted(key)}",
-                accepted=f"none of {spelling.choice(_DEONTICS)} in a clause of kind {kind!r}",
-            )
-    else:
-        _check_deontic(node, said, shape.deontic, kind, reading)
-    return node.only(tuple(key for key in node if key not in said))
-
-
-def _is_deontic_misspelt(key: str, shape: type[shapes.ClauseShape]) -> bool:
-    return (
-        key not in shape.keys() and spelling.nearest(key, (*_DEONTICS, *shape.keys())) in _DEONTICS
-    )
-
-
-def _check_deontic(
-    node: tree.Mapping,
-    said: list[tree.Scalar],
-    deontic: tuple[str, str],
-    kind: str,
-    reading: context.Reading,
-) -> None:
-    expected, verb = deontic
-    accepted = f"'{expected}: {verb}' in a clause of kind {kind!r}"
-    if not said:
-        reading.problems.add(at=node, found=f"no {expected!r}", accepted=accepted)
-    for key in said:
-        value = node[key]
-        if key == expected and value == verb:
-            continue
-        written = f"{key}: {value}" if isinstance(value, tree.Scalar) else f"{key}: …"
-        near = (
-            spelling.nearest(str(value), [verb])
-            if key == expected
-            else spelling.nearest(key, [expected])
-        )
-        reading.problems.add(
-            at=value if key == expected else key,
-            found=spelling.quoted(written),
-            accepted=accepted,
-            nearest=near,
-        )
 
 
 def _check_fines(

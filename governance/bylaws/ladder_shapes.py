@@ -51,22 +51,16 @@ class Step(shapes.Shape):
 
     @model_validator(mode="before")
     @classmethod
-    def _bare_warning(cls, data: Any) -> Any:
-        """Read a bare ``warning:`` as ``warning: {}``."""
-        if isinstance(data, tree.Mapping):
-            for key, value in data.items():
-                if isinstance(value, tree.Scalar) and value.null and key == "warning":
-                    data[key] = tree.Mapping(line=value.line, column=value.column)
-        return data
-
-    @model_validator(mode="after")
-    def _one_each(self) -> "Step":
-        if len(self.model_fields_set) != 1:
+    def _one_key(cls, data: Any) -> Any:
+        """Refuse several sanctions in one step, and read a bare ``warning:`` as ``warning: {}``."""
+        if not isinstance(data, tree.Mapping):
+            return data
+        if len(data) != 1:
             raise context.refusal(
-                found=f"{len(self.model_fields_set)} sanctions in one step",
-                accepted=f"one of {spelling.choice(Step.keys())}",
+                found=f"{len(data)} sanctions in one step",
+                accepted=f"one of {spelling.choice(cls.keys())}",
             )
-        return self
+        return data.filled("warning")
 
     def record(self) -> clauses.Step:
         """Return the step that this stands for."""

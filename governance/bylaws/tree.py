@@ -52,6 +52,14 @@ class Mapping(dict[Scalar, "Node"]):
         kept.update({key: value for key, value in self.items() if key in keys})
         return kept
 
+    def filled(self, key: str) -> "Mapping":
+        """Return the mapping with an empty mapping where nothing was written after a key."""
+        kept = Mapping(line=self.line, column=self.column)
+        for each, value in self.items():
+            bare = each == key and isinstance(value, Scalar) and value.null
+            kept[each] = Mapping(line=value.line, column=value.column) if bare else value
+        return kept
+
 
 Node: TypeAlias = Scalar | Sequence | Mapping
 

@@ -16,7 +16,7 @@ _NOTED_BY_THE_SHAPE = ("missing", "extra_forbidden")
 _ACCEPTED_OF_TYPE = {
     "list_type": "a list",
     "dict_type": "a mapping",
-    "model_attributes_type": "a mapping with a 'kind'",
+    "union_tag_not_found": "a mapping with a 'kind'",
 }
 
 
@@ -41,7 +41,9 @@ def _note(error: ValidationError, problems: Problems) -> None:
     for each in error.errors(include_url=False):
         if each["type"] in _NOTED_BY_THE_SHAPE:
             continue
-        if each["type"] in ("union_tag_invalid", "union_tag_not_found"):
+        if each["type"] in ("union_tag_invalid", "union_tag_not_found") and isinstance(
+            each["input"], tree.Mapping
+        ):
             _note_kind(each, problems)
         else:
             _note_value(each, problems)
