@@ -205,6 +205,44 @@ def test_the_workbook_has_the_chances_as_numbers_and_the_page_as_people_count(
     assert "3 in 20 (14.3 %)" in page_text.replace("\u00a0", " ")
 
 
+@pytest.mark.parametrize(
+    ("sheet", "row"),
+    [
+        ("Summary", ["Taken", 60_668.5, 19_275.55]),
+        ("Summary", ["Carried in from the season before", 1_204.5, 0]),
+        ("Use by day", [date(2026, 3, 2), 553.8, 955.15, 174.05, 295.05]),
+        ("Use by day", ["bay mullet", date(2026, 4, 20), 68_000, "kg"]),
+        (
+            "Standing",
+            [
+                *(17, 17, "licensed", 966.696, 22.01, 980.67, 8.036),
+                *(262.571, 0, 216.936, 45.635, 12, 11.25, 0.75, 25, 1),
+            ],
+        ),
+        ("Findings", ["3.1", "No more than ninety kilos of mullet a day", 27, 5, 22]),
+        ("Cases", ["Taking more than allowed", "1. warning", 19, 4, 11, 1, 3]),
+        ("Cases", ["From then until the decision", 17]),
+        ("Dues", ["fine", 7, 613.5, 401.25, 212.25]),
+        ("Dues", ["Bay mullet, kg", 12, 148.9, 52.5, 96.4]),
+        ("Dues", ["All members", 516, 450.75, 54, 11.25, 6]),
+        ("Reporting", ["After 24 and within 48 hours", 466, 466 / 4_514]),
+        ("Reporting", ["All classes", 4_514, 413, 413 / 4_514, 17]),
+        ("Risk table", [68_000, "as now", 0.372, 100 / 121, 63_876.55, 117_876.55]),
+        ("Settlement", ["Bay mullet, kg", 2_411.25, 3_020.775, 96.4]),
+        ("Next season", ["Median allotment", 1_204.688]),
+        ("Observations", ["clams", "ground survey", "long_spit", date(2026, 2, 5), 23_400, "kg"]),
+    ],
+)
+def test_a_row_has_its_figures_in_their_places(book: bytes, sheet: str, row: list[Any]) -> None:
+    # A sheet keeps sixteen digits of a number.
+    rows = [_to_ten_places(found[: len(row)]) for found in _sheets(book)[sheet]]
+    assert _to_ten_places(row) in rows
+
+
+def _to_ten_places(row: list[Any]) -> list[Any]:
+    return [round(cell, 10) if isinstance(cell, float) else cell for cell in row]
+
+
 def test_the_workbook_has_the_course_of_the_stock_and_the_estimates_unrounded(book: bytes) -> None:
     sheets = _sheets(book)
     advice = SEASON.advice[0]
@@ -310,7 +348,7 @@ def test_the_pdf_is_tagged_pdf_ua_on_a4_under_a_megabyte(document: bytes) -> Non
     reader = pypdf.PdfReader(io.BytesIO(document))
     assert b"<pdfuaid:part>1</pdfuaid:part>" in document
     assert "/StructTreeRoot" in reader.root_object
-    assert reader.root_object["/Lang"] == "en"
+    assert str(reader.root_object["/Lang"]) == "en"
     box = reader.pages[0].mediabox
     assert (round(box.width), round(box.height)) == (595, 842)
     assert len(document) < 1_000_000
