@@ -15,7 +15,7 @@ from tests.bench import rounds
 
 _BASELINE = "numpy, an array a step"
 # Draws, seasons and candidates. The draws are the same: they decide what fits a cache.
-_SIZES = {"small": (10_000, 20, 20), "full": (10_000, 20, 30)}
+_SIZES = {"small": (10_000, 10, 30), "full": (10_000, 20, 30)}
 _FRACTION = 0.1
 # A round takes a tenth of a second, so that many are cheap and outvote a busy machine.
 _ROUNDS = 25
