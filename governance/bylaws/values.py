@@ -1,10 +1,12 @@
 """Reads one written value: each function returns what a text stands for, or refuses it.
 
-A refusal says what is accepted and, for a name, the nearest one that is known.
+A refusal says what is accepted and, for a name, the nearest one that is known. The functions take
+the value by position, as pydantic's validators give it.
 """
 
 import datetime
 import enum
+import functools
 import re
 import zoneinfo
 from collections.abc import Callable, Collection
@@ -53,6 +55,7 @@ def _quantity(parse: Callable[[str], Read], value: object, accepted: str) -> Rea
 
 
 def line(value: object) -> str:
+    """Read one line of text."""
     text = _written(value, "one line of text")
     if not text or "\n" in text or len(text) > _LONGEST_LINE:
         _refuse(f"one line of text, at most {_LONGEST_LINE} characters")
@@ -60,6 +63,7 @@ def line(value: object) -> str:
 
 
 def paragraph(value: object) -> str:
+    """Read a text of any number of lines."""
     text = _written(value, "a text")
     if not text or len(text) > _LONGEST_TEXT:
         _refuse(f"a text, at most {_LONGEST_TEXT:,} characters")
@@ -67,6 +71,7 @@ def paragraph(value: object) -> str:
 
 
 def name(value: object) -> str:
+    """Read a code name, such as ``long_spit``."""
     accepted = "a name in small letters, digits and underscores, such as 'long_spit'"
     text = _written(value, accepted)
     if not re.fullmatch(r"[a-z][a-z0-9_]{0,39}", text, re.ASCII):
@@ -75,6 +80,7 @@ def name(value: object) -> str:
 
 
 def clause_id(value: object) -> str:
+    """Read the number of a clause; it is a text, so that 3.10 is not 3.1."""
     accepted = "a clause number, such as '3.2'"
     text = _written(value, accepted)
     if not re.fullmatch(r"[0-9]{1,3}(\.[0-9]{1,3}){0,3}[a-z]?", text, re.ASCII):
@@ -83,6 +89,7 @@ def clause_id(value: object) -> str:
 
 
 def whole(value: object) -> int:
+    """Read a whole number, in tens whatever it begins with."""
     text = _written(value, "a whole number")
     if not re.fullmatch(r"\d{1,9}", text, re.ASCII):
         _refuse("a whole number")
@@ -90,6 +97,7 @@ def whole(value: object) -> int:
 
 
 def positive(value: object) -> int:
+    """Read a whole number from 1."""
     number = whole(value)
     if number == 0:
         _refuse("a whole number from 1")
@@ -97,6 +105,7 @@ def positive(value: object) -> int:
 
 
 def decimal(value: object) -> Fraction:
+    """Read a number above 0, exactly."""
     accepted = "a number above 0, such as '1' or '1.5'"
     text = _written(value, accepted)
     if not re.fullmatch(r"\d{1,6}(\.\d{1,6})?", text, re.ASCII) or not Fraction(text):
@@ -105,6 +114,7 @@ def decimal(value: object) -> Fraction:
 
 
 def percent(value: object) -> Fraction:
+    """Read a percentage as a part of 1."""
     part = _quantity(quantities.percent, value, "a percentage, such as '5 %'")
     if part > 1:
         _refuse("a percentage from 0 to 100")
@@ -112,6 +122,7 @@ def percent(value: object) -> Fraction:
 
 
 def amount(value: object) -> quantities.Amount:
+    """Read a number and a unit."""
     amount = _quantity(quantities.Amount.parse, value, "a number and a unit, such as '40 kg'")
     if not amount.number:
         _refuse("an amount above 0")
@@ -119,6 +130,7 @@ def amount(value: object) -> quantities.Amount:
 
 
 def ceiling(value: object) -> quantities.Amount | None:
+    """Read an amount, or None for the word that means a holder's allotment."""
     accepted = "an amount, such as '40 kg', or 'allotment'"
     text = _written(value, accepted)
     if text == "allotment":
@@ -129,6 +141,8 @@ def ceiling(value: object) -> quantities.Amount | None:
 
 
 def whole_time(unit: str, accepted: str) -> Callable[[object], int]:
+    """Return a reader of times that come to a whole number of a unit."""
+
     def read(value: object) -> int:
         amount = _quantity(quantities.Amount.parse, value, accepted)
         if quantities.unit(amount.unit).measures != "time":
@@ -142,6 +156,7 @@ def whole_time(unit: str, accepted: str) -> Callable[[object], int]:
 
 
 def working_days(value: object) -> Fraction:
+    """Read a number of working days, which no clock measures."""
     accepted = "a number of days, such as '2 d'"
     amount = _quantity(quantities.Amount.parse, value, accepted)
     if amount.unit != "d" or not amount.number:
@@ -150,6 +165,7 @@ def working_days(value: object) -> Fraction:
 
 
 def money(value: object, info: ValidationInfo) -> quantities.Money:
+    """Read a sum of the book's money that coins can pay."""
     money = _quantity(quantities.Money.parse, value, "a sum of money, such as '200 EUR'")
     _check_currency(money, info)
     if money.minor.denominator != 1 or not money.minor:
@@ -158,6 +174,7 @@ def money(value: object, info: ValidationInfo) -> quantities.Money:
 
 
 def price(value: object, info: ValidationInfo) -> quantities.Price:
+    """Read a price in the book's money."""
     price = _quantity(quantities.Price.parse, value, "a price, such as '3 EUR/kg'")
     _check_currency(price.money, info)
     if not price.money.number:
@@ -172,6 +189,7 @@ def _check_currency(money: quantities.Money, info: ValidationInfo) -> None:
 
 
 def day(value: object) -> datetime.date:
+    """Read a date."""
     accepted = f"a date from {_YEARS[0]} to {_YEARS[-1]}, such as '2026-03-01'"
     text = _written(value, accepted)
     if not re.fullmatch(r"\d{4}-\d{2}-\d{2}", text, re.ASCII):
@@ -186,6 +204,7 @@ def day(value: object) -> datetime.date:
 
 
 def day_of_year(value: object) -> tuple[int, int]:
+    """Read a day that every year has, as (month, day)."""
     accepted = "a day of the year, such as '10 April'"
     found = re.fullmatch(r"(\d{1,2})\s+([A-Za-z]+)", _written(value, accepted), re.ASCII)
     if found is None:
@@ -201,6 +220,7 @@ def day_of_year(value: object) -> tuple[int, int]:
 
 
 def reference(*points: str) -> Callable[[object], clauses.Reference]:
+    """Return a reader of multiples of these reference points."""
     accepted = f"a multiple of {' or '.join(points)}, such as '0.2 {points[0]}'"
 
     def read(value: object) -> clauses.Reference:
@@ -216,6 +236,7 @@ def reference(*points: str) -> Callable[[object], clauses.Reference]:
 
 
 def one_of(names: type[Named]) -> Callable[[object], Named]:
+    """Return a reader of the values of an enumeration."""
     accepted = f"one of {spelling.choice(names)}"
 
     def read(value: object) -> Named:
@@ -230,6 +251,8 @@ def one_of(names: type[Named]) -> Callable[[object], Named]:
 def declared(
     what: str, known: Callable[[context.Reading], Collection[str] | None]
 ) -> Callable[[object, ValidationInfo], str]:
+    """Return a reader of names that the same book declares."""
+
     def read(value: object, info: ValidationInfo) -> str:
         text = _written(value, f"the name of {what}")
         names = known(context.reading_of(info))
@@ -242,6 +265,8 @@ def declared(
 
 
 def listed(table: Collection[str], what: str) -> Callable[[object], str]:
+    """Return a reader of codes that a table holds."""
+
     def read(value: object) -> str:
         text = _written(value, what)
         if text not in table:
@@ -252,4 +277,11 @@ def listed(table: Collection[str], what: str) -> Callable[[object], str]:
 
 
 def zone(value: object) -> str:
-    return listed(zoneinfo.available_timezones(), "a time zone, such as 'Europe/Dublin'")(value)
+    """Read a time zone that this machine knows."""
+    return listed(_zones(), "a time zone, such as 'Europe/Dublin'")(value)
+
+
+@functools.cache
+def _zones() -> frozenset[str]:
+    # Listing them walks a folder, and a book is read often.
+    return frozenset(zoneinfo.available_timezones())

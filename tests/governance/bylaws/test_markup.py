@@ -1,6 +1,7 @@
 """What YAML allows and a book does not, and what is meant to do harm."""
 
 import hashlib
+import re
 import time
 
 import pytest
@@ -129,3 +130,17 @@ def test_any_text_is_read_or_refused_with_a_place(at: int, drop: int, pieces: st
         assert all(1 <= each.line <= lines and each.column >= 1 for each in refused.problems)
     else:
         assert book.digest == hashlib.sha256(text.encode()).hexdigest()
+
+
+_VALUES = tuple(re.finditer(r"(?<=: )[^\n,{}\[\]]+|\{[^{}\n]*\}|\[[^\n]*?\]", BOOK))
+
+
+@pytest.mark.parametrize("instead", ["[]", "{}", "x", "[[x]]", "{a: b}", "{kind: {a: b}}", "~"])
+def test_any_value_may_be_of_any_shape_and_is_refused_where_it_stands(instead: str) -> None:
+    for value in _VALUES:
+        text = BOOK[: value.start()] + instead + BOOK[value.end() :]
+        line = BOOK.count("\n", 0, value.start()) + 1
+        try:
+            read(text)
+        except UnreadableBook as refused:
+            assert line in [each.line for each in refused.problems], (value[0], instead)
