@@ -196,11 +196,11 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable | None:
             RiskRow(
                 candidate=amount,
                 label=_label(amount, proposed, request.present),
-                chance_below=row.below_ever,
-                chance_cut=row.cut_next,
+                chance_below=float(row.below_ever),
+                chance_cut=float(row.cut_next),
                 mean_take=stock.base_units(row.mean_take),
                 end_median=stock.base_units(row.end_median),
-                breaks=at_most is not None and row.below_ever > at_most,
+                breaks=at_most is not None and bool(row.below_ever > at_most),
             )
             for amount, row in zip(amounts, rows, strict=True)
         ),

@@ -1,9 +1,7 @@
 """An advice between the row that keeps it and the record that the rules make."""
 
-import dataclasses
 import hashlib
 import json
-from datetime import date
 from typing import Any
 
 from pydantic import TypeAdapter
@@ -14,10 +12,8 @@ _ADVICE = TypeAdapter(Advice)
 
 
 def plain(advice: Advice) -> dict[str, Any]:
-    """Return an advice as JSON can keep it; floats are written so that they read back the same."""
-    kept: dict[str, Any] = json.loads(
-        json.dumps(dataclasses.asdict(advice), default=date.isoformat)
-    )
+    """Return an advice as JSON can keep it; it reads back the same."""
+    kept: dict[str, Any] = _ADVICE.dump_python(advice, mode="json")
     return kept
 
 

@@ -17,6 +17,16 @@ from ledger.seasons import queries as seasons
 
 
 @transactions.required
+def ring(*, commons_id: int, season: str, hand: Hand) -> str:
+    """Make the advice for a season, if its allowable is not adopted yet; say what was done."""
+    adopted = seasons.allowable(commons_id=commons_id, season=season)
+    if adopted is not None:
+        return f"no longer due: an allowable was adopted by entry {adopted.entry}"
+    made = advise(commons_id=commons_id, season=season, hand=hand)
+    return f"proposed {made.proposed} base units of {made.resource}"
+
+
+@transactions.required
 def advise(*, commons_id: int, season: str, hand: Hand) -> Advice:
     """Make the advice for a season from what is recorded, and seal its digest in an entry.
 

@@ -51,6 +51,12 @@ def allocation(*, commons_id: int, resource: str, day: date) -> clauses.Allocati
     return _of_resource(book, resource, clauses.Allocation)
 
 
+def work_duties(*, commons_id: int, day: date) -> tuple[clauses.WorkDuty, ...]:
+    """Return the duties of work in force on a day."""
+    book = in_force(commons_id=commons_id, day=day)
+    return tuple(clause for clause in book.clauses if isinstance(clause, clauses.WorkDuty))
+
+
 def _of_resource(book: clauses.Book, resource: str, kind: type[OfResource]) -> OfResource:
     for clause in book.clauses:
         if isinstance(clause, kind) and clause.resource == resource:

@@ -54,15 +54,40 @@ class NoProcedure(LedgerError):
     message: ClassVar[str] = "Edition {edition} has no procedure clause; no case can move."
 
 
+class UnknownWord(LedgerError):
+    """A move or a role has no such name."""
+
+    code: ClassVar[str] = "cases.unknown_word"
+    message: ClassVar[str] = "Found the {what} {found!r}; accepted are {accepted}."
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Handed:
+    """One attempt to hand something over: when, by what means, and whether arrival is proved."""
+
+    on: date
+    means: str
+    proved: bool
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Act:
-    """What somebody does in a case: the move, in what role, and what the move carries."""
+    """What somebody does in a case: the move and the role by their names, and what they carry.
 
-    move: Move
-    actor: Actor
+    :raises UnknownWord: if the procedure has no such move or role.
+    """
+
+    move: str
+    role: str
+    member: int | None = None
     reason: str = ""
     officer: int | None = None
-    delivery: Delivery | None = None
+    handed: Handed | None = None
+
+    def __post_init__(self) -> None:
+        for what, found, known in (("move", self.move, Move), ("role", self.role, Role)):
+            if found not in list(known):
+                raise UnknownWord(what=what, found=found, accepted=", ".join(known))
 
 
 @transactions.required
@@ -96,24 +121,22 @@ def move(*, commons_id: int, case: int, act: Act, hand: Hand) -> CaseSoFar:
     """
     before = queries.case(commons_id=commons_id, number=case)
     today = _today(commons_id, hand)
-    _check_office(commons_id, act.actor, today)
+    actor = Actor(role=Role(act.role), member=act.member)
+    _check_office(commons_id, actor, today)
     if act.move in (Move.TELL, Move.DECIDE) and not before.finding.standing:
         raise FindingWithdrawn(move=act.move, finding=before.finding.number)
-    due = queries.step_due(commons_id=commons_id, case=before, decided_on=today)
-    step = _within_notice(commons_id, before, due)
     event = Event(
-        move=act.move,
-        actor=act.actor,
+        move=Move(act.move),
+        actor=actor,
         on=today,
         reason=act.reason,
         concerns_board=_concerns_board(commons_id, before.so_far.subjects, today),
         monitors=_watching(commons_id, before.finding),
         officer=act.officer,
-        delivery=act.delivery,
-        proposes_warning=act.move is Move.TELL and isinstance(step.step, clauses.Warning),
-        step=step.index if act.move is Move.DECIDE else None,
-        amount_minor=_amount(before, step) if act.move is Move.DECIDE else 0,
+        delivery=None if act.handed is None else _delivery(act.handed),
     )
+    if event.move in (Move.TELL, Move.DECIDE):
+        event = _with_step(commons_id, before, event)
     return _advance(commons_id, before, event, hand)
 
 
@@ -125,7 +148,7 @@ def ring(*, commons_id: int, case: int, hand: Hand) -> str:
     today = _today(commons_id, hand)
     for due_move, first in clocks.due(case=before.so_far, procedure=rules):
         if first <= today:
-            act = Act(move=due_move, actor=THE_COMPUTER)
+            act = Act(move=due_move, role=Role.BOOK)
             after = move(commons_id=commons_id, case=case, act=act, hand=hand)
             return f"{due_move}: now {after.state}"
     return "no longer due"
@@ -310,6 +333,19 @@ def _undo(commons_id: int, case: queries.CaseRecord, reason: str, hand: Hand) ->
             clock=hand.clock,
             chance=hand.chance,
         )
+
+
+def _delivery(handed: Handed) -> Delivery:
+    return Delivery(on=handed.on, means=handed.means, proved=handed.proved)
+
+
+def _with_step(commons_id: int, case: queries.CaseRecord, event: Event) -> Event:
+    """Return a notice or a decision with the step that the ladder comes to."""
+    due = queries.step_due(commons_id=commons_id, case=case, decided_on=event.on)
+    if event.move is Move.TELL:
+        return replace(event, proposes_warning=isinstance(due.step, clauses.Warning))
+    kept = _within_notice(commons_id, case, due)
+    return replace(event, step=kept.index, amount_minor=_amount(case, kept))
 
 
 def _within_notice(

@@ -5,20 +5,20 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import date
 from itertools import pairwise
-from typing import ClassVar
+from typing import ClassVar, assert_never
 
 from governance.bylaws import clauses
 from governance.compliance.findings import SubjectKind
 from governance.sanctions import ladder, record
-from governance.sanctions.moves import State
+from governance.sanctions.moves import Move
 from ledger.bylaws import queries as bylaws
 from ledger.cases import columns, models
 from ledger.commons import queries as commons
 from ledger.foundation.errors import LedgerError
 from ledger.judgement import queries as judgement
 
-# Where nothing more happens to a case by itself.
-ENDED = frozenset({State.SET_ASIDE, State.OVERTURNED, State.DONE})
+# After these moves nothing follows.
+ENDING = (Move.SET_ASIDE, Move.OVERTURN, Move.COMPLETE)
 
 
 class UnknownCase(LedgerError):
@@ -52,14 +52,28 @@ class CaseRecord:
         return self.events[0].on
 
 
-def cases(*, commons_id: int) -> tuple[CaseRecord, ...]:
-    """Return the cases of a commons in order of number."""
-    found = {each.number: each for each in judgement.latest(commons_id=commons_id).values()}
-    events: dict[int, list[models.Event]] = defaultdict(list)
-    for row in models.Event.objects.filter(commons_id=commons_id).order_by("case", "place"):
-        events[row.case].append(row)
+def cases(
+    *, commons_id: int, ladder: str | None = None, is_open: bool | None = None
+) -> tuple[CaseRecord, ...]:
+    """Return the cases of a commons in order of number.
+
+    :param ladder: only those under this ladder.
+    :param is_open: only those that something may still happen to, or only those that ended.
+    """
     rows = models.Case.objects.filter(commons_id=commons_id).order_by("number")
-    return tuple(_record(row, events[row.number], found[row.finding]) for row in rows)
+    if ladder is not None:
+        rows = rows.filter(ladder=ladder)
+    if is_open is not None:
+        ended = models.Event.objects.filter(commons_id=commons_id, move__in=ENDING).values("case")
+        rows = rows.exclude(number__in=ended) if is_open else rows.filter(number__in=ended)
+    wanted = list(rows)
+    events: dict[int, list[models.Event]] = defaultdict(list)
+    for event in models.Event.objects.filter(
+        commons_id=commons_id, case__in=[row.number for row in wanted]
+    ).order_by("case", "place"):
+        events[event.case].append(event)
+    found = judgement.by_number(commons_id=commons_id, numbers=[row.finding for row in wanted])
+    return tuple(_record(row, events[row.number], found[row.finding]) for row in wanted)
 
 
 def case(*, commons_id: int, number: int) -> CaseRecord:
@@ -133,10 +147,8 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
             told_on=other.so_far.told_on,
             final_on=other.so_far.final_on,
         )
-        for other in cases(commons_id=commons_id)
-        if other.number != case.number
-        and other.ladder == case.ladder
-        and responsible(other) & responsible(case)
+        for other in cases(commons_id=commons_id, ladder=case.ladder)
+        if other.number != case.number and responsible(other) & responsible(case)
     ]
     return ladder.step_for(
         ladder=ladder_of(commons_id=commons_id, case=case),
@@ -144,6 +156,23 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
         earlier=earlier,
         decided_on=decided_on,
     )
+
+
+def measure(*, commons_id: int, case: CaseRecord) -> str | None:
+    """Return in a word what was decided, or None before a decision."""
+    if case.so_far.step is None:
+        return None
+    match ladder_of(commons_id=commons_id, case=case).steps[case.so_far.step]:
+        case clauses.Warning():
+            return "warning"
+        case clauses.Fine():
+            return "fine"
+        case clauses.Suspension():
+            return "suspension"
+        case clauses.Referral():
+            return "referral"
+        case other:
+            assert_never(other)
 
 
 def days_between(case: CaseRecord) -> tuple[int | None, int | None]:

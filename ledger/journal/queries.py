@@ -1,7 +1,7 @@
 """What can be asked of a journal. Records come out, never rows."""
 
 import json
-from collections.abc import Collection, Iterator
+from collections.abc import Collection, Iterable, Iterator
 from datetime import UTC, date, datetime
 from typing import ClassVar
 
@@ -199,20 +199,22 @@ def balances(
 
     With ``up_to`` as known at that entry, from the postings; without, now, from the balances.
     """
-    named = {"commons_id": commons_id, "account__startswith": prefix}
-    columns_read = ("account", "resource", "unit", "amount")
     if up_to is None:
-        found = models.Balance.objects.filter(**named).values_list(*columns_read)
+        standing: Iterable[tuple[str, str, str, int]] = models.Balance.objects.filter(
+            commons_id=commons_id, account__startswith=prefix
+        ).values_list("account", "resource", "unit", "amount")
     else:
-        found = (
-            models.Posting.objects.filter(**named, number__lte=up_to)
+        standing = (
+            models.Posting.objects.filter(
+                commons_id=commons_id, account__startswith=prefix, number__lte=up_to
+            )
             .values_list("account", "resource", "unit")
             .annotate(total=Sum("amount"))
         )
     # SQLite compares beginnings without regard to case; the exact comparison is made here.
     return {
         (account, resource, unit): int(amount)
-        for account, resource, unit, amount in found.order_by("account", "resource", "unit")
+        for account, resource, unit, amount in sorted(standing)
         if account.startswith(prefix)
     }
 

@@ -102,6 +102,19 @@ def assess_duties(*, commons_id: int, during: DateRange, hand: Hand) -> Receipt 
 
 
 @transactions.required
+def close_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
+    """Judge what the judge has not read yet, then settle the season, under one lock on the head.
+
+    :raises SeasonNotOver: if a day of the season is left.
+    :raises ledger.seasons.operations.SeasonAlreadyClosed: if it was closed before.
+    """
+    journal.hold(commons_id=commons_id)
+    today = commons.commons(commons_id=commons_id).day_of(hand.clock())
+    judge(commons_id=commons_id, as_of=today - timedelta(days=1), hand=hand)
+    return settle_season(commons_id=commons_id, season=season, hand=hand)
+
+
+@transactions.required
 def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
     """Close a season: carry over, note what is owed, return the rest to the pool; all or nothing.
 
@@ -123,7 +136,7 @@ def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
 
 
 def _open_windows(*, commons_id: int, as_of: date) -> tuple[DateRange, ...]:
-    """Return the windows of seasons that have begun and are not closed."""
+    """Return the windows that have begun and in which some season is not closed."""
     opened = seasons_queries.seasons(commons_id=commons_id).values()
     begun = {
         season.during for season in opened if not season.closed and season.during.first <= as_of

@@ -47,6 +47,12 @@ def latest(*, commons_id: int, up_to: int | None = None) -> Mapping[Key, Finding
     return {record.finding.key: record for record in records}
 
 
+def by_number(*, commons_id: int, numbers: Collection[int]) -> Mapping[int, FindingRecord]:
+    """Return the last version of some findings, by number."""
+    rows = models.FindingVersion.objects.filter(commons_id=commons_id, finding__in=numbers)
+    return {row.finding: _record(row) for row in rows.order_by("finding", "version")}
+
+
 def finding(*, commons_id: int, number: int, version: int | None = None) -> FindingRecord:
     """Return a finding by number: one version of it, or the last."""
     rows = models.FindingVersion.objects.filter(commons_id=commons_id, finding=number)
@@ -72,7 +78,7 @@ def season_facts(
 ) -> facts.SeasonFacts:
     """Return what the judge reads of the seasons that share a window.
 
-    Allotments are as they stand now; everything else is as known up to an entry number.
+    As known up to an entry number, and of some members alone where they are given.
     """
     allotments = {
         (season.resource, member): amount

@@ -10,6 +10,7 @@ from typing import ClassVar
 from governance import quantities
 from governance.bylaws import clauses
 from governance.periods import DateRange
+from ledger.bylaws import queries as bylaws
 from ledger.commons import operations as commons
 from ledger.commons import queries as commons_queries
 from ledger.foundation import transactions
@@ -43,6 +44,13 @@ class NothingGiven(LedgerError):
 
     code: ClassVar[str] = "movements.nothing_given"
     message: ClassVar[str] = "Found {found}; accepted is an amount above zero."
+
+
+class NotPayable(LedgerError):
+    """Money is given for a duty that money cannot stand for."""
+
+    code: ClassVar[str] = "movements.not_payable"
+    message: ClassVar[str] = "Clause {clause} on {day} is no duty of work that can be paid off."
 
 
 class NoSuchSeason(LedgerError):
@@ -181,26 +189,31 @@ def record_work(
 
 @transactions.required
 def record_money_instead(
-    *, commons_id: int, member: int, clause: clauses.WorkDuty, day: date, amount: int, hand: Hand
+    *, commons_id: int, member: int, clause: str, day: date, amount: int, hand: Hand
 ) -> Receipt:
     """Record money, in the smallest coin, that a member gave instead of work.
 
-    :raises NothingGiven: if the amount is not above zero, or the clause takes no money.
+    The clause in force on the day says how much work it stands for.
+
+    :raises NothingGiven: if the amount is not above zero.
+    :raises NotPayable: if no duty of this name can be paid off.
     :raises ledger.commons.operations.UnknownMember: if nobody has the number.
     :raises NoSuchSeason: if no season has been opened.
     """
-    if clause.instead is None:
-        raise NothingGiven(found=f"money for clause {clause.head.id}, which takes work only")
-    days = Fraction(_above_zero(amount)) / clause.instead.money.minor
-    minutes = quantities.rounded(days * clause.day_minutes, quantities.Rounding.DOWN)
-    owed, given = _duty_accounts(commons_id, member, clause.head.id, day, "duty_bought")
+    duties = bylaws.work_duties(commons_id=commons_id, day=day)
+    duty = next((each for each in duties if each.head.id == clause), None)
+    if duty is None or duty.instead is None:
+        raise NotPayable(clause=clause, day=day)
+    days = Fraction(_above_zero(amount)) / duty.instead.money.minor
+    minutes = quantities.rounded(days * duty.day_minutes, quantities.Rounding.DOWN)
+    owed, given = _duty_accounts(commons_id, member, clause, day, "duty_bought")
     money = commons_queries.commons(commons_id=commons_id).money
-    paid = f"instead:{clause.head.id}:{member}"
+    paid = f"instead:{clause}:{member}"
     postings = [
         *_moved(owed, given, resource="work", unit="min", amount=minutes),
         *_moved(paid, "cash", resource="money", unit=money, amount=amount),
     ]
-    facts: dict[str, Fact] = {"clause": clause.head.id, "amount": amount, "minutes": minutes}
+    facts: dict[str, Fact] = {"clause": clause, "amount": amount, "minutes": minutes}
     return _contribute(commons_id, queries.MONEY_INSTEAD, member, day, facts, postings, {}, hand)
 
 
@@ -278,6 +291,15 @@ def give_back(
     )
 
 
+def base_amount(*, given: Decimal, unit: str, base: str) -> int:
+    """Return a measure as given in whole base units, rounded half up once.
+
+    :raises governance.quantities.UnitMismatch: if the unit does not convert to the base.
+    """
+    exact = quantities.converted(Fraction(given), from_unit=unit, to_unit=base)
+    return quantities.rounded(exact, quantities.Rounding.HALF_UP)
+
+
 def _kept(commons_id: int) -> _Kept:
     return _Kept(
         commons=commons_queries.commons(commons_id=commons_id),
@@ -348,8 +370,7 @@ def _base_amount(kept: _Kept, slip: Slip, line: Line) -> int:
             ),
         )
     base = kept.resources[line.resource].base
-    exact = quantities.converted(Fraction(line.given), from_unit=line.unit, to_unit=base)
-    amount = quantities.rounded(exact, quantities.Rounding.HALF_UP)
+    amount = base_amount(given=line.given, unit=line.unit, base=base)
     if amount <= 0:
         raise NothingTaken(slip=slip.slip, found=f"{line.given} {line.unit} of {line.resource}")
     return amount

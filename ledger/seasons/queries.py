@@ -114,20 +114,27 @@ def allowable(*, commons_id: int, season: str) -> AllowableRecord | None:
     )
 
 
-def left(*, commons_id: int, season: str) -> Mapping[int, int]:
+def left(*, commons_id: int, season: str, up_to: int | None = None) -> Mapping[int, int]:
     """Return what each member may still take in a season, in base units."""
-    return _by_member(commons_id=commons_id, prefix=f"left:{season}:")
+    return _by_member(commons_id=commons_id, prefix=f"left:{season}:", up_to=up_to)
 
 
-def taken(*, commons_id: int, season: str) -> Mapping[int, int]:
+def taken(*, commons_id: int, season: str, up_to: int | None = None) -> Mapping[int, int]:
     """Return what each member has taken in a season, in base units."""
-    return _by_member(commons_id=commons_id, prefix=f"taken:{season}:")
+    return _by_member(commons_id=commons_id, prefix=f"taken:{season}:", up_to=up_to)
 
 
-def allotments(*, commons_id: int, season: str) -> Mapping[int, int]:
-    """Return each member's allotment, carried and given-back amounts included, in base units."""
-    remaining = left(commons_id=commons_id, season=season)
-    used = taken(commons_id=commons_id, season=season)
+def allotments(*, commons_id: int, season: str, up_to: int | None = None) -> Mapping[int, int]:
+    """Return each member's allotment, carried and given-back amounts included, in base units.
+
+    Of a closed season, as it stood before the close.
+    """
+    closed = models.Close.objects.filter(commons_id=commons_id, season=season).first()
+    if closed is not None:
+        before = closed.entry_number - 1
+        up_to = before if up_to is None else min(up_to, before)
+    remaining = left(commons_id=commons_id, season=season, up_to=up_to)
+    used = taken(commons_id=commons_id, season=season, up_to=up_to)
     return {
         member: remaining.get(member, 0) + used.get(member, 0)
         for member in sorted({*remaining, *used})
@@ -136,7 +143,7 @@ def allotments(*, commons_id: int, season: str) -> Mapping[int, int]:
 
 def carried(*, commons_id: int, resource: str) -> Mapping[int, int]:
     """Return what waits for each member's next season; below zero is owed."""
-    return _by_member(commons_id=commons_id, prefix=f"carried:{resource}:")
+    return _by_member(commons_id=commons_id, prefix=f"carried:{resource}:", up_to=None)
 
 
 def pool(*, commons_id: int, season: str) -> int:
@@ -151,6 +158,6 @@ def pool(*, commons_id: int, season: str) -> int:
     )
 
 
-def _by_member(*, commons_id: int, prefix: str) -> Mapping[int, int]:
-    found = journal.balances(commons_id=commons_id, prefix=prefix)
+def _by_member(*, commons_id: int, prefix: str, up_to: int | None) -> Mapping[int, int]:
+    found = journal.balances(commons_id=commons_id, prefix=prefix, up_to=up_to)
     return {int(account.rsplit(":", 1)[1]): amount for (account, _, _), amount in found.items()}

@@ -43,16 +43,15 @@ def assess_duties(job: DueJob, hand: Hand) -> str:
 
 def close_season(job: DueJob, hand: Hand) -> str:
     """Close a season, once the judge has read everything before."""
-    receipt = judgement.settle_season(
+    receipt = judgement.close_season(
         commons_id=job.commons_id, season=job.payload["season"], hand=hand
     )
     return f"closed by entry {receipt.number}"
 
 
 def advise(job: DueJob, hand: Hand) -> str:
-    """Make the advice for a season on the day that the book names."""
-    made = advice.advise(commons_id=job.commons_id, season=job.payload["season"], hand=hand)
-    return f"proposed {made.proposed}"
+    """Make the advice for a season on the day that the book names, if it is still due."""
+    return advice.ring(commons_id=job.commons_id, season=job.payload["season"], hand=hand)
 
 
 HANDLERS: Mapping[str, Handler] = {
