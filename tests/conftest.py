@@ -16,6 +16,7 @@ from datetime import UTC, datetime, timedelta
 from pathlib import Path
 from typing import Any
 
+import hypothesis
 import pytest
 from django.db import connections
 
@@ -24,6 +25,11 @@ from tests import databases
 
 _TEST_ON = "STINTBOOK_TEST_ON"
 _REQUIRE_ALL = "STINTBOOK_TEST_REQUIRE_ALL"
+
+
+# A shared machine is no place for deadlines; the suite is to stay quick.
+hypothesis.settings.register_profile("house", deadline=None, max_examples=50)
+hypothesis.settings.load_profile("house")
 
 
 class TickingClock:
