@@ -109,11 +109,11 @@ def advise(
         resource=request.units.resource,
         clause=request.clause.head.id,
         season=request.season,
-        method="a growth model fitted to catches and an index, with a harvest control rule",
+        method="A growth model is fitted to the catches and the index; a rule reads the take from it.",
         model=_model_words(method),
         data_first_year=series.years[0],
         data_last_year=series.years[-1],
-        interval=f"{INTERVAL:.0%} of the stocks that the data do not rule out",
+        interval=f"{INTERVAL:.0%} of the stocks not ruled out by the data lie between them",
         estimates=_estimates(stock),
         reference_points=_reference_points(stock),
         rule=_rule_words(method.rule),
@@ -310,15 +310,15 @@ def _model_words(method: clauses.ByGrowthModel) -> str:
         clauses.Sequence.TAKE_THEN_GROW: "the take comes before the growth",
         clauses.Sequence.GROW_THEN_TAKE: "the growth comes before the take",
     }[method.sequence]
-    return f"{name}; in each season {order}"
+    return f"{name}; in each season {order}."
 
 
 def _rule_words(rule: clauses.Rule) -> str:
     match rule:
         case clauses.HockeyStick():
             return (
-                f"nothing at or below {levels.words(rule.limit)}; a rising part of the stock up to"
-                f" {levels.words(rule.trigger)}; from there {levels.words(rule.fraction)}"
+                f"Nothing at or below {levels.words(rule.limit)}; a rising part of the stock up to"
+                f" {levels.words(rule.trigger)}; from there {levels.words(rule.fraction)}."
             )
         case clauses.FortyTen():
             reading = {
@@ -326,11 +326,11 @@ def _rule_words(rule: clauses.Rule) -> str:
                 clauses.FortyTenReading.RAMP_IN_FRACTION: "the fraction rises in a straight line",
             }[rule.reading]
             return (
-                f"nothing at or below {levels.words(rule.lower)}; up to"
-                f" {levels.words(rule.upper)} {reading}; from there {levels.words(rule.fraction)}"
+                f"Nothing at or below {levels.words(rule.lower)}; up to"
+                f" {levels.words(rule.upper)} {reading}; from there {levels.words(rule.fraction)}."
             )
         case clauses.ConstantEscapement():
-            return f"whatever stands above {levels.words(rule.leave)}"
+            return f"Whatever stands above {levels.words(rule.leave)}."
 
 
 def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded) -> tuple[str, ...]:

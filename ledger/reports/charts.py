@@ -8,9 +8,9 @@ from datetime import date, timedelta
 from itertools import accumulate
 from typing import TYPE_CHECKING, Any, ClassVar
 
+from governance.advice.records import StockHistory, YearBand
 from ledger.foundation.errors import LedgerError
 from ledger.reports import canvas, numbers
-from ledger.reports.advised import StockHistory, YearBand
 from ledger.reports.figures import ResourceFigures
 
 if TYPE_CHECKING:

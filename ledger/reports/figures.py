@@ -13,8 +13,8 @@ from datetime import date, datetime
 from fractions import Fraction
 from typing import ClassVar
 
+from governance.advice.records import Advice
 from ledger.foundation.errors import LedgerError
-from ledger.reports.advised import AdviceFigures
 
 
 class FiguresDisagree(LedgerError):
@@ -392,7 +392,7 @@ class SeasonFigures:
     standings: tuple[StandingRow, ...]
     orders: tuple[OrderRow, ...]
     observations: tuple[ObservationRow, ...]
-    advice: tuple[AdviceFigures, ...]
+    advice: tuple[Advice, ...]
     next_season: tuple[NextSeasonRow, ...]
     cautions: tuple[str, ...]
 

@@ -3,8 +3,8 @@
 import bisect
 import math
 
+from governance.advice.records import Advice, EstimateRow, RiskRow, StockHistory, SurveyRisk
 from ledger.reports import numbers, outline
-from ledger.reports.advised import AdviceFigures, EstimateRow, RiskRow, StockHistory
 from ledger.reports.figures import ResourceFigures, SeasonFigures
 from ledger.reports.outline import Cell, Sheet, Table
 
@@ -12,7 +12,7 @@ from ledger.reports.outline import Cell, Sheet, Table
 _FILL_FROM = (0.025, 0.1, 0.25, 0.5)
 
 
-def proposal(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+def proposal(advice: Advice, *, resource: ResourceFigures) -> Table:
     """Return the step from the present allowable to the proposed one."""
     steps = (
         ("Allowable of this season", advice.present),
@@ -34,7 +34,7 @@ def proposal(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
     )
 
 
-def estimates(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+def estimates(advice: Advice, *, resource: ResourceFigures) -> Table:
     """Return what was estimated about the resource, and the reference points."""
     return Table(
         sheet=Sheet.ADVICE,
@@ -57,8 +57,10 @@ def _estimate(row: EstimateRow) -> tuple[Cell, ...]:
     )
 
 
-def risk(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
     """Return the candidates in the order of their size; a frame marks a broken threshold."""
+    if advice.survey_risk is not None:
+        return _survey_risk(advice.survey_risk, resource=resource)
     table = advice.risk
     if table is None:
         return Table(
@@ -66,7 +68,7 @@ def risk(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
             caption=f"Risk table of {resource.name}",
             columns=(),
             rows=(),
-            empty="The method of this advice runs no simulations, so it has no risk table.",
+            empty="Neither runs nor a survey's error stand behind this advice; no risk is known.",
         )
     unit = numbers.unit_word(resource.unit)
     rows = sorted(table.rows, key=lambda row: row.candidate)
@@ -84,6 +86,35 @@ def risk(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
         rows=tuple(_risk(row, resource=resource) for row in rows),
         empty="No candidate was tried.",
         note=_risk_note(advice, resource=resource),
+    )
+
+
+def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
+    unit = numbers.unit_word(resource.unit)
+    found = numbers.rough_amount(table.found, base=resource.base, unit=resource.unit)
+    return Table(
+        sheet=Sheet.RISK,
+        caption=f"Risk table of {resource.name}: what the survey's error means",
+        columns=(
+            f"Allowable, {unit}",
+            "What it is",
+            f"Chance that it is more than {table.rate} of what stands",
+        ),
+        rows=tuple(
+            (
+                outline.amount(row.candidate, base=resource.base, unit=resource.unit),
+                outline.text(row.label),
+                _chance(row.chance_above, framed=False),
+            )
+            for row in table.rows
+        ),
+        empty="No candidate was tried.",
+        note=(
+            f"The survey found {found}, with an error of"
+            f" {numbers.percent(table.variation)} (coefficient of variation, all grounds together)."
+            " What really stands is taken as lognormal around that. A darker cell is a greater"
+            " chance."
+        ),
     )
 
 
@@ -112,7 +143,7 @@ def _chance(probability: float, *, framed: bool) -> Cell:
     )
 
 
-def _risk_note(advice: AdviceFigures, *, resource: ResourceFigures) -> str:
+def _risk_note(advice: Advice, *, resource: ResourceFigures) -> str:
     table = advice.risk
     assert table is not None
     limit = numbers.rough_amount(table.limit, base=resource.base, unit=resource.unit)
@@ -131,7 +162,7 @@ def _risk_note(advice: AdviceFigures, *, resource: ResourceFigures) -> str:
     return " ".join(sentences)
 
 
-def stock(advice: AdviceFigures, *, resource: ResourceFigures) -> Table:
+def stock(advice: Advice, *, resource: ResourceFigures) -> Table:
     """Return the stock by year: observed, median and bands."""
     history = advice.stock
     return Table(

@@ -2,6 +2,7 @@
 
 from dataclasses import replace
 
+from governance.advice.records import Advice
 from ledger.reports import (
     case_tables,
     charts,
@@ -12,7 +13,6 @@ from ledger.reports import (
     use_tables,
     words,
 )
-from ledger.reports.advised import AdviceFigures
 from ledger.reports.figures import ResourceFigures, SeasonFigures, digest
 from ledger.reports.outline import Chart, PointList, Report, Section, Sheet
 
@@ -170,7 +170,7 @@ def _reporting(figures: SeasonFigures) -> Section:
     )
 
 
-def _resource(figures: SeasonFigures, advice: AdviceFigures) -> Section:
+def _resource(figures: SeasonFigures, advice: Advice) -> Section:
     resource = figures.resource(advice.resource)
     section = Section(
         key=f"resource-{resource.code}",

@@ -2,8 +2,8 @@
 
 from fractions import Fraction
 
+from governance.advice.records import Advice
 from ledger.reports import numbers
-from ledger.reports.advised import AdviceFigures
 from ledger.reports.figures import ResourceFigures, SeasonFigures, digest
 from ledger.reports.numbers import many
 
@@ -151,7 +151,7 @@ def orders(figures: SeasonFigures) -> str:
     return f"The season had {orders_count} from outside authorities."
 
 
-def advice(figures: SeasonFigures, row: AdviceFigures) -> str:
+def advice(figures: SeasonFigures, row: Advice) -> str:
     """Say what is proposed, how it compares with the present, and at what risk."""
     resource = figures.resource(row.resource)
     proposed, present = (_with_unit(resource, value) for value in (row.proposed, row.present))
@@ -167,7 +167,14 @@ def advice(figures: SeasonFigures, row: AdviceFigures) -> str:
     )
 
 
-def _risk_of_proposal(row: AdviceFigures) -> str:
+def _risk_of_proposal(row: Advice) -> str:
+    if row.survey_risk is not None:
+        tried_rates = [one for one in row.survey_risk.rows if one.candidate == row.proposed]
+        return "".join(
+            f" The chance that this is more than {row.survey_risk.rate} of what really stands is"
+            f" {numbers.chance(one.chance_above)}."
+            for one in tried_rates
+        )
     if row.risk is None:
         return ""
     tried = [one for one in row.risk.rows if one.candidate == row.proposed]
@@ -179,7 +186,7 @@ def _risk_of_proposal(row: AdviceFigures) -> str:
     )
 
 
-def method(row: AdviceFigures) -> tuple[str, ...]:
+def method(row: Advice) -> tuple[str, ...]:
     """Say how the advice was made."""
     runs = "It uses no chance."
     if row.runs is not None:
@@ -192,7 +199,7 @@ def method(row: AdviceFigures) -> tuple[str, ...]:
     )
 
 
-def stock(row: AdviceFigures, *, resource: ResourceFigures) -> str:
+def stock(row: Advice, *, resource: ResourceFigures) -> str:
     """Say where the stock stands between the last estimated year and the last projected one."""
     assert row.stock is not None
     bands = row.stock.bands

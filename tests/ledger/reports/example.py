@@ -3,7 +3,8 @@
 from datetime import UTC, date, datetime, timedelta
 from fractions import Fraction
 
-from ledger.reports import advised, cautions, figures
+from governance.advice import records as advised
+from ledger.reports import cautions, figures
 
 OPENS, CLOSES = date(2026, 3, 1), date(2026, 6, 28)
 DAYS = tuple(OPENS + timedelta(days=step) for step in range(120))
@@ -185,9 +186,9 @@ def history(*, years: int = 46, runs: int = 10_000) -> advised.StockHistory:
     )
 
 
-def mullet_advice() -> advised.AdviceFigures:
+def mullet_advice() -> advised.Advice:
     """Give an advice by a growth model."""
-    return advised.AdviceFigures(
+    return advised.Advice(
         resource="mullet",
         clause="quota.mullet",
         season="2027",
@@ -214,6 +215,7 @@ def mullet_advice() -> advised.AdviceFigures:
         proposed=47_600_000,
         bounds=("No more than 30 % less than the season before, unless below the limit.",),
         risk=_risk(),
+        survey_risk=None,
         stock=history(),
         reasons=("The survey index of the last three years lies above the ten-year mean.",),
         cautions=(
@@ -226,9 +228,9 @@ def mullet_advice() -> advised.AdviceFigures:
     )
 
 
-def clam_advice() -> advised.AdviceFigures:
+def clam_advice() -> advised.Advice:
     """Give an advice by survey and rate, which uses no chance."""
-    return advised.AdviceFigures(
+    return advised.Advice(
         resource="clams",
         clause="quota.clams",
         season="2027",
@@ -245,6 +247,15 @@ def clam_advice() -> advised.AdviceFigures:
         proposed=22_237_500,
         bounds=(),
         risk=None,
+        survey_risk=advised.SurveyRisk(
+            rate="15 %",
+            found=148_250_000,
+            variation=0.07,
+            rows=(
+                advised.SurveyRiskRow(candidate=20_000_000, label="", chance_above=0.065),
+                advised.SurveyRiskRow(candidate=22_237_500, label="proposed", chance_above=0.5),
+            ),
+        ),
         stock=None,
         reasons=(),
         cautions=("The survey says nothing of how fast the clams grow.",),

@@ -10,7 +10,8 @@ from xml.etree import ElementTree
 
 import pytest
 
-from ledger.reports import advised, charts, figures
+from governance.advice import records as advised
+from ledger.reports import charts, figures
 from tests.ledger.reports import example
 
 SVG = "{http://www.w3.org/2000/svg}"
