@@ -198,9 +198,13 @@ def test_the_workbook_has_the_chances_as_numbers_and_the_page_as_people_count(
     book: bytes, page_text: str
 ) -> None:
     rows = _sheets(book)["Risk table"]
+    sizes = [row[0] for row in rows if isinstance(row[0], int | float)]
     chances = {row[0]: row[2] for row in rows if isinstance(row[0], int | float)}
     assert chances[54_400.0] == 0.058
-    assert list(chances) == sorted(chances)
+    # One table after the other: the mullet's candidates, then the clams' two, each by size.
+    assert sizes[:-2] == sorted(sizes[:-2])
+    assert sizes[-2:] == [20_000.0, 22_237.5]
+    assert chances[20_000.0] == 0.065
     assert "1 in 20 (5.8 %)" in page_text.replace("\u00a0", " ")
     assert "3 in 20 (14.3 %)" in page_text.replace("\u00a0", " ")
 
