@@ -1,6 +1,7 @@
 """Whole base units, UCUM codes, exact fractions, and the one rounding function."""
 
 import enum
+import functools
 import math
 import re
 from collections.abc import Mapping
@@ -229,17 +230,29 @@ def percent(text: str) -> Fraction:
 
 def decimal_text(value: Fraction) -> str:
     """Write a fraction as a decimal, to at most six places, without trailing zeros."""
-    sign = "-" if value < 0 else ""
-    millionths = rounded(abs(value) * 1_000_000, Rounding.HALF_UP)
-    whole, rest = divmod(millionths, 1_000_000)
-    digits = f"{rest:06d}".rstrip("0")
-    return f"{sign}{whole:,}" + (f".{digits}" if digits else "")
+    return _millionths_text(rounded(value * 1_000_000, Rounding.HALF_UP))
 
 
 def amount_text(amount: int, *, base: str, unit_code: str) -> str:
     """Write an amount of base units in a unit for reading: 43000 g in kg is ``43 kg``."""
-    value = converted(Fraction(amount), from_unit=base, to_unit=unit_code)
-    return f"{decimal_text(value)} {unit_code}"
+    # In whole numbers: a judgement writes many thousands of these.
+    over, under = _millionths_in(base, unit_code)
+    millionths = (2 * abs(amount) * over + under) // (2 * under)
+    return f"{_millionths_text(millionths if amount >= 0 else -millionths)} {unit_code}"
+
+
+@functools.cache
+def _millionths_in(base: str, unit_code: str) -> tuple[int, int]:
+    """Return how many millionths of a unit one base unit is, as a ratio of whole numbers."""
+    return converted(Fraction(1_000_000), from_unit=base, to_unit=unit_code).as_integer_ratio()
+
+
+def _millionths_text(millionths: int) -> str:
+    whole, rest = divmod(abs(millionths), 1_000_000)
+    sign = "-" if millionths < 0 else ""
+    if not rest:
+        return f"{sign}{whole:,}"
+    return f"{sign}{whole:,}.{rest:06d}".rstrip("0")
 
 
 def money_text(minor: int, *, currency: str) -> str:

@@ -26,9 +26,9 @@ def in_closed_window(
     closed = live & np.array([_is_closed(clause.closed, day) for day in laid.season.days()])
     line = _window_line(clause)
     return tuple(
-        _finding(clause=clause, book=book, takes=takes, rows=rows, lines=(line,), orders=())
+        _finding(clause=clause, book=book, takes=takes, acts=acts, lines=(line,), orders=())
         for takes in laid.takes_of(clause.resource)
-        for rows in _closed_takes(
+        for acts in _closed_takes(
             takes=takes,
             closed=_days_of_zones(clause.zones, takes.table.zones)[:, np.newaxis] & closed,
             who=clause.head.who,
@@ -57,12 +57,12 @@ def against_orders(
         for order in orders:
             days = live & laid.days_in(order.during)
             closed |= _days_of_zones(order.zones, takes.table.zones)[:, np.newaxis] & days
-        for rows in _closed_takes(takes=takes, closed=closed, who=clause.head.who):
-            broken = _orders_over(orders, takes=takes, rows=rows)
+        for acts in _closed_takes(takes=takes, closed=closed, who=clause.head.who):
+            broken = _orders_over(orders, acts=acts)
             lines = tuple(_order_line(order) for order in broken)
             found.append(
                 _finding(
-                    clause=clause, book=book, takes=takes, rows=rows, lines=lines, orders=broken
+                    clause=clause, book=book, takes=takes, acts=acts, lines=lines, orders=broken
                 )
             )
     return tuple(found)
@@ -83,13 +83,14 @@ def _days_of_zones(named: Sequence[str], zones: Sequence[str]) -> ground.Mask:
 
 def _closed_takes(
     *, takes: ground.Takes, closed: ground.Mask, who: str | None
-) -> Iterable[facts.Column]:
-    """Yield the rows of each (member, day) that lie on closed (zone, day) pairs."""
+) -> Iterable[tuple[evidence.Act, ...]]:
+    """Yield the acts of each (member, day) that lie on closed (zone, day) pairs."""
     if not closed.any():
         return
     place = takes.table.zone * closed.shape[1] + takes.offset
     rows = np.flatnonzero(closed.ravel()[place] & takes.bound[who] & (takes.table.amount > 0))
-    yield from evidence.grouped(rows=rows, by=takes.cell)
+    for _, acts in evidence.grouped(table=takes.table, rows=rows, by=takes.cell):
+        yield acts
 
 
 def _finding(
@@ -97,12 +98,11 @@ def _finding(
     clause: clauses.ClosedWindow | clauses.OutsideOrder,
     book: clauses.Book,
     takes: ground.Takes,
-    rows: facts.Column,
+    acts: tuple[evidence.Act, ...],
     lines: tuple[str, ...],
     orders: Sequence[facts.Order],
 ) -> findings.Finding:
     read = sentences.reading(book=book, table=takes.table)
-    acts = evidence.acts(table=takes.table, rows=rows)
     key = findings.Key(
         clause=clause.head.id,
         subject_kind=findings.SubjectKind.MEMBER,
@@ -111,7 +111,10 @@ def _finding(
         window=evidence.day_of(acts),
     )
     total = sum(act.amount for act in acts)
-    used = (*acts, *((each.entry, each.authority, each.during) for each in orders))
+    ordered = (
+        evidence.line(each.entry, each.authority, each.during.first, each.during.until)
+        for each in orders
+    )
     return findings.Finding(
         key=key,
         edition=book.edition,
@@ -127,7 +130,7 @@ def _finding(
             *lines,
             f"All of it, {read.text(total)}, lies in what was closed.",
         ),
-        inputs=evidence.digest(book=book, key=key, limit=0, rows=used),
+        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*evidence.lines(acts), *ordered)),
     )
 
 
@@ -139,10 +142,11 @@ def _window_line(clause: clauses.ClosedWindow) -> str:
 
 
 def _orders_over(
-    orders: Sequence[facts.Order], *, takes: ground.Takes, rows: facts.Column
+    orders: Sequence[facts.Order], *, acts: Sequence[evidence.Act]
 ) -> tuple[facts.Order, ...]:
-    day = periods.date_of(int(takes.table.day[rows[0]]))
-    zones = {takes.table.zones[zone] for zone in takes.table.zone[rows].tolist()}
+    """Return the orders that some act of one day goes against."""
+    day = periods.date_of(acts[0].day)
+    zones = {act.zone for act in acts}
     return tuple(
         order
         for order in orders

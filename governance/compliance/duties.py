@@ -137,7 +137,9 @@ def _finding(
             *_rendered_lines(clause=clause, gifts=gifts, worked=worked, paid=paid),
             f"Short by {sentences.hours(owed - rendered)}.",
         ),
-        inputs=evidence.digest(book=book, key=key, limit=owed, rows=gifts),
+        inputs=evidence.digest(
+            book=book, key=key, limit=owed, rows=(evidence.line(*gift) for gift in gifts)
+        ),
     )
 
 

@@ -1,7 +1,8 @@
 """What a finding rests on: the acts behind it, and the digest of everything that was used."""
 
 import hashlib
-from collections.abc import Iterator, Sequence
+import itertools
+from collections.abc import Iterable, Iterator, Sequence
 from datetime import timedelta
 from typing import NamedTuple
 
@@ -25,32 +26,36 @@ class Act(NamedTuple):
     zone: str
 
 
-def grouped(*, rows: facts.Column, by: facts.Column) -> Iterator[facts.Column]:
-    """Yield the rows of each group, in order of the group's number in ``by``."""
-    if not len(rows):
-        return
-    order = rows[np.argsort(by[rows], kind="stable")]
-    groups = by[order]
-    yield from np.split(order, np.flatnonzero(groups[1:] != groups[:-1]) + 1)
-
-
 def acts(*, table: facts.Withdrawals, rows: facts.Column) -> tuple[Act, ...]:
-    """Return rows of takes as records, in order of entry, whatever the order of the rows."""
+    """Return rows of takes as records, in the order of the rows."""
+    zones = [table.zones[zone] for zone in table.zone[rows].tolist()]
+    columns = (table.day, table.instant, table.reported, table.amount)
     return tuple(
-        sorted(
-            Act(entry, member, table.resource, day, instant, reported, amount, table.zones[zone])
-            for entry, member, day, instant, reported, amount, zone in zip(
-                table.entry[rows].tolist(),
-                table.member[rows].tolist(),
-                table.day[rows].tolist(),
-                table.instant[rows].tolist(),
-                table.reported[rows].tolist(),
-                table.amount[rows].tolist(),
-                table.zone[rows].tolist(),
-                strict=True,
-            )
+        map(
+            Act,
+            table.entry[rows].tolist(),
+            table.member[rows].tolist(),
+            itertools.repeat(table.resource),
+            *(column[rows].tolist() for column in columns),
+            zones,
         )
     )
+
+
+def grouped(
+    *, table: facts.Withdrawals, rows: facts.Column, by: facts.Column
+) -> Iterator[tuple[int, tuple[Act, ...]]]:
+    """Yield each group's number in ``by`` and its acts, sorted, whatever the order of the rows.
+
+    :param by: a group for every row of the table; only the given rows are grouped.
+    """
+    ordered = rows[np.argsort(by[rows], kind="stable")]
+    groups = by[ordered]
+    records = acts(table=table, rows=ordered)
+    edges = np.flatnonzero(groups[1:] != groups[:-1]) + 1
+    bounds = [0, *edges.tolist(), len(records)] if records else []
+    for begins, ends in itertools.pairwise(bounds):
+        yield int(groups[begins]), tuple(sorted(records[begins:ends]))
 
 
 def entries(records: Sequence[Act]) -> tuple[int, ...]:
@@ -64,22 +69,28 @@ def day_of(records: Sequence[Act]) -> periods.DateRange:
     return periods.DateRange(first=day, until=day + timedelta(days=1))
 
 
-def digest(
-    *, book: clauses.Book, key: findings.Key, limit: int, rows: Sequence[tuple[object, ...]]
-) -> str:
+def digest(*, book: clauses.Book, key: findings.Key, limit: int, rows: Iterable[str]) -> str:
     """Return the SHA-256 (hex) of what a finding was computed from.
 
     One line for the book's digest, one for the key, one for the limit, then one for each row;
-    the fields of a line are parted by tabs. Rows come sorted, so that their order is no input.
+    the fields of a line are parted by tabs. Rows come in order of entry, so that the order in
+    which they were read is no input.
     """
+    window = key.window
     named = (
-        key.clause,
-        key.subject_kind.value,
-        key.subject,
-        key.resource,
-        key.window.first,
-        key.window.until,
+        f"{key.clause}\t{key.subject_kind.value}\t{key.subject}\t{key.resource}"
+        f"\t{window.first}\t{window.until}"
     )
-    lines = ((book.digest,), named, (limit,), *rows)
-    text = "\n".join("\t".join(map(str, line)) for line in lines)
+    text = "\n".join((book.digest, named, str(limit), *rows))
     return hashlib.sha256(text.encode()).hexdigest()
+
+
+def line(*fields: object) -> str:
+    """Return a row of the digest from its fields."""
+    return "\t".join(map(str, fields))
+
+
+def lines(records: Iterable[Act]) -> Iterator[str]:
+    """Yield the rows of the digest that acts are: their fields in the order of ``Act``."""
+    for entry, member, resource, day, instant, reported, amount, zone in records:
+        yield f"{entry}\t{member}\t{resource}\t{day}\t{instant}\t{reported}\t{amount}\t{zone}"

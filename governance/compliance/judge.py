@@ -35,14 +35,18 @@ def judge(
         members=members,
         classes={clause.head.who for book, _ in books for clause in book.clauses},
     )
+    suspended: list[findings.Finding] = []
     found: list[findings.Finding] = []
     for book, span in books:
-        found += suspensions.taken_while_suspended(book=book, live=laid.days_in(span), laid=laid)
+        suspended += suspensions.taken_while_suspended(
+            book=book, live=laid.days_in(span), laid=laid
+        )
         for clause in book.clauses:
             live = laid.days_in(span, clause.head.in_force)
             if live.any():
                 found += _of_clause(clause=clause, book=book, live=live, laid=laid)
-    return _asked_for(found=_single(found), members=members, laid=laid)
+    single = _single(suspended=suspended, found=found)
+    return _asked_for(found=single, members=members, laid=laid)
 
 
 def _of_clause(
@@ -74,21 +78,24 @@ def _of_clause(
             assert_never(clause)
 
 
-def _single(found: Iterable[findings.Finding]) -> Iterable[findings.Finding]:
+def _single(
+    *, suspended: Iterable[findings.Finding], found: Iterable[findings.Finding]
+) -> list[findings.Finding]:
     """Return the findings with one for each key.
 
     A take under suspension may break, on the same day, the very clause that the suspension was
-    decided for. The finding on the suspension comes first and covers the whole day's take; it
-    takes over what the other has to say.
+    decided for. The finding on the suspension covers the whole day's take; it stays, and takes
+    over what the other has to say.
     """
-    by_key: dict[findings.Key, findings.Finding] = {}
+    by_key = {each.key: each for each in suspended}
+    single = []
     for each in found:
-        first = by_key.get(each.key)
+        first = by_key.get(each.key) if by_key else None
         if first is None:
-            by_key[each.key] = each
+            single.append(each)
         else:
             by_key[each.key] = replace(first, working=(*first.working, *each.working))
-    return by_key.values()
+    return [*single, *by_key.values()]
 
 
 def _asked_for(
@@ -97,9 +104,23 @@ def _asked_for(
     members: frozenset[int] | None,
     laid: ground.Ground,
 ) -> tuple[findings.Finding, ...]:
-    kept = sorted(found, key=lambda finding: finding.key)
+    kept = sorted(found, key=_in_order)
     if members is None:
         return tuple(kept)
     households = {each.household for each in laid.holders.members if each.number in members}
     asked = {findings.SubjectKind.MEMBER: members, findings.SubjectKind.HOUSEHOLD: households}
     return tuple(each for each in kept if each.key.subject in asked[each.key.subject_kind])
+
+
+def _in_order(finding: findings.Finding) -> tuple[object, ...]:
+    # The key's own order, spelt out: comparing records would take longer than finding them.
+    key = finding.key
+    window = key.window
+    return (
+        key.clause,
+        key.subject_kind.value,
+        key.subject,
+        key.resource,
+        window.first,
+        window.until,
+    )

@@ -1,5 +1,6 @@
 """Limits on a quantity: no holder takes more than so much in each day, week, month or season."""
 
+import functools
 import itertools
 from fractions import Fraction
 
@@ -61,8 +62,8 @@ def _of_takes(
         return []
     rows = np.flatnonzero(over.ravel()[cell] & bound)
     found = []
-    for group in evidence.grouped(rows=rows, by=cell):
-        holder, window = divmod(int(cell[group[0]]), len(windows))
+    for group, acts in evidence.grouped(table=takes.table, rows=rows, by=cell):
+        holder, window = divmod(group, len(windows))
         key = findings.Key(
             clause=clause.head.id,
             subject_kind=_SUBJECTS[clause.counted_by],
@@ -70,7 +71,6 @@ def _of_takes(
             resource=clause.resource,
             window=windows[window],
         )
-        acts = evidence.acts(table=takes.table, rows=group)
         limit, ceiling = int(limits[holder]), int(ceilings[holder])
         found.append(
             _finding(
@@ -130,10 +130,12 @@ def _limits(
 
 
 def _ceilings(limits: facts.Column, tolerance: Fraction) -> facts.Column:
-    # In Python's integers: a limit times the numerator could pass 64 bits.
-    return facts.column(
-        [limit + limit * tolerance.numerator // tolerance.denominator for limit in limits.tolist()]
-    )
+    """Return each limit with its tolerance, rounded down."""
+    over, under = tolerance.as_integer_ratio()
+    assert over * under < 2**62, "a tolerance has few decimal places"
+    # Split, because a limit times the numerator could pass 64 bits.
+    whole, rest = np.divmod(limits, under)
+    return facts.column(limits + whole * over + rest * over // under)
 
 
 def _finding(
@@ -161,7 +163,7 @@ def _finding(
             sentences.taken(acts=acts, window=key.window, read=read),
             *_limit_lines(clause=clause, read=read, total=total, limit=limit, ceiling=ceiling),
         ),
-        inputs=evidence.digest(book=book, key=key, limit=limit, rows=acts),
+        inputs=evidence.digest(book=book, key=key, limit=limit, rows=evidence.lines(acts)),
     )
 
 
@@ -179,9 +181,14 @@ def _limit_lines(
             f"{named} {read.text(limit)}, without tolerance.",
             f"Beyond it {read.text(total - limit)}.",
         )
-    percent = quantities.decimal_text(clause.tolerance * 100)
     return (
-        f"{named} {read.text(limit)}; with {percent} % tolerance {read.text(ceiling)}.",
+        f"{named} {read.text(limit)}; with {_percent(clause.tolerance)} % tolerance"
+        f" {read.text(ceiling)}.",
         f"Beyond the limit {read.text(total - limit)};"
         f" beyond limit and tolerance {read.text(total - ceiling)}.",
     )
+
+
+@functools.cache
+def _percent(tolerance: Fraction) -> str:
+    return quantities.decimal_text(tolerance * 100)

@@ -76,5 +76,5 @@ def _finding(
             f" was {sentences.hours(total)}.",
             f"Allowed {sentences.hours(allowed)}; beyond it {sentences.hours(beyond)}.",
         ),
-        inputs=evidence.digest(book=book, key=key, limit=allowed, rows=acts),
+        inputs=evidence.digest(book=book, key=key, limit=allowed, rows=evidence.lines(acts)),
     )

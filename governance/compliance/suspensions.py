@@ -28,20 +28,29 @@ def taken_while_suspended(
         return ()
     cells = (suspended & live).ravel()
     return tuple(
-        _finding(book=book, laid=laid, takes=takes, rows=group)
+        _finding(
+            book=book,
+            takes=takes,
+            acts=acts,
+            member=laid.holders.members[cell // laid.season.length_days],
+        )
         for takes in laid.takes
-        for group in evidence.grouped(
-            rows=np.flatnonzero(cells[takes.cell] & (takes.table.amount > 0)), by=takes.cell
+        for cell, acts in evidence.grouped(
+            table=takes.table,
+            rows=np.flatnonzero(cells[takes.cell] & (takes.table.amount > 0)),
+            by=takes.cell,
         )
     )
 
 
 def _finding(
-    *, book: clauses.Book, laid: ground.Ground, takes: ground.Takes, rows: facts.Column
+    *,
+    book: clauses.Book,
+    takes: ground.Takes,
+    acts: tuple[evidence.Act, ...],
+    member: facts.Member,
 ) -> findings.Finding:
     read = sentences.reading(book=book, table=takes.table)
-    acts = evidence.acts(table=takes.table, rows=rows)
-    member = laid.holders.members[int(takes.position[rows[0]])]
     suspension = _first_over(member, periods.date_of(acts[0].day))
     key = findings.Key(
         clause=suspension.value,
@@ -51,7 +60,8 @@ def _finding(
         window=evidence.day_of(acts),
     )
     total = sum(act.amount for act in acts)
-    named = (suspension.entry, suspension.value, suspension.during)
+    during = suspension.during
+    named = evidence.line(suspension.entry, suspension.value, during.first, during.until)
     return findings.Finding(
         key=key,
         edition=book.edition,
@@ -65,10 +75,10 @@ def _finding(
         working=(
             sentences.taken(acts=acts, window=key.window, read=read),
             f"Entry {suspension.entry} suspended the member for clause {suspension.value}"
-            f" {sentences.when(suspension.during)}.",
+            f" {sentences.when(during)}.",
             f"Limit {read.text(0)} while suspended; beyond it {read.text(total)}.",
         ),
-        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*acts, named)),
+        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*evidence.lines(acts), named)),
     )
 
 

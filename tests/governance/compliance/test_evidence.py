@@ -12,20 +12,31 @@ from tests.governance.compliance.scenes import Take
 
 
 class TestGrouped:
-    def test_rows_come_group_by_group(self):
+    TABLE = scenes.withdrawals(Take(entry=number) for number in (9, 2, 5, 4, 7))
+
+    def grouped(self, rows: list[int]) -> list[tuple[int, list[int]]]:
         by = facts.column([5, 0, 5, 7, 9])
-        groups = evidence.grouped(rows=facts.column([0, 2, 3, 4]), by=by)
-        assert [group.tolist() for group in groups] == [[0, 2], [3], [4]]
+        return [
+            (group, [act.entry for act in acts])
+            for group, acts in evidence.grouped(table=self.TABLE, rows=facts.column(rows), by=by)
+        ]
+
+    def test_acts_come_group_by_group_in_order_of_entry(self):
+        assert self.grouped([0, 2, 3, 4]) == [(5, [5, 9]), (7, [4]), (9, [7])]
+
+    def test_the_order_of_rows_is_no_input(self):
+        assert self.grouped([4, 3, 2, 0]) == self.grouped([0, 2, 3, 4])
 
     def test_no_rows_make_no_group(self):
-        assert list(evidence.grouped(rows=facts.column([]), by=facts.column([1, 2]))) == []
+        assert self.grouped([]) == []
 
 
 class TestActs:
-    def test_acts_come_in_order_of_entry(self):
-        table = scenes.withdrawals((Take(entry=9), Take(entry=2, zone="pier_sand")))
+    def test_acts_name_their_zone_and_resource(self):
+        table = scenes.withdrawals((Take(entry=9), Take(entry=2, zone="pier_sand", kg=3)))
         acts = evidence.acts(table=table, rows=np.arange(2))
-        assert [(act.entry, act.zone) for act in acts] == [(2, "pier_sand"), (9, "anvil_sand")]
+        assert [(act.entry, act.zone) for act in acts] == [(9, "anvil_sand"), (2, "pier_sand")]
+        assert (acts[1].amount, acts[1].resource) == (3_000, "clams")
 
     def test_an_entry_of_two_rows_is_one_entry(self):
         table = scenes.withdrawals((Take(entry=2), Take(entry=2, zone="pier_sand")))

@@ -188,6 +188,16 @@ class TestHolders:
         (one,) = found(scenes.limit(who="licensed"), known)
         assert (one.total, one.entries) == (43_000, (1,))
 
+    def test_what_others_of_the_household_take_does_not_make_a_breach(self):
+        members = (
+            scenes.member(1),
+            scenes.member(3, household=1, classes={"retired": scenes.ALWAYS}),
+        )
+        known = scenes.season(
+            (Take(entry=1, kg=40), Take(entry=2, member=3, kg=43)), members=members
+        )
+        assert found(scenes.limit(who="licensed"), known) == ()
+
 
 class TestAllotments:
     CLAUSE = scenes.limit(
@@ -220,6 +230,19 @@ class TestAllotments:
     def test_a_missing_allotment_is_nothing(self):
         (one,) = found(self.CLAUSE, scenes.season((Take(entry=1, kg=GRAM),)))
         assert (one.limit, one.breach) == (0, 1)
+
+    def test_a_very_large_allotment_keeps_its_exact_ceiling(self):
+        # 3 % of 4,000,000,000,000,033 are 120,000,000,000,000.99, rounded down.
+        large, ceiling = 4_000_000_000_000_033, 4_120_000_000_000_033
+        at_it = scenes.season(
+            (Take(entry=1, kg=Fraction(ceiling, 1000)),), allotments={("clams", 1): large}
+        )
+        assert found(self.CLAUSE, at_it) == ()
+        beyond = scenes.season(
+            (Take(entry=1, kg=Fraction(ceiling + 1, 1000)),), allotments={("clams", 1): large}
+        )
+        (one,) = found(self.CLAUSE, beyond)
+        assert (one.breach, one.overuse) == (1, 120_000_000_000_001)
 
 
 class TestUnits:

@@ -1,7 +1,11 @@
 from datetime import date
+from fractions import Fraction
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
+from governance import quantities
 from governance.compliance import sentences
 from tests.governance.compliance import scenes
 
@@ -43,3 +47,13 @@ def test_a_figure_is_hours_for_a_duty_and_the_reading_unit_for_a_take():
     duty = sentences.figure(amount=90, base="min", resource="", book=book)
     take = sentences.figure(amount=1_500, base="g", resource="clams", book=book)
     assert (duty, take) == ("1 h 30 min", "1.5 kg")
+
+
+@given(amount=st.integers(-(2**62), 2**62), units=st.sampled_from([("g", "kg"), ("min", "d")]))
+def test_amounts_are_written_as_their_exact_value_is(amount, units):
+    base, unit = units
+    exact = quantities.converted(Fraction(amount), from_unit=base, to_unit=unit)
+    text = quantities.amount_text(amount, base=base, unit_code=unit)
+    assert text == f"{quantities.decimal_text(exact)} {unit}"
+    written = Fraction(text.removesuffix(f" {unit}").replace(",", ""))
+    assert abs(written - exact) <= Fraction(1, 2_000_000)
