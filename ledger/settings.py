@@ -56,7 +56,8 @@ def _sqlite(path: str) -> dict[str, Any]:
             "timeout": 20,
             "init_command": (
                 f"PRAGMA journal_mode={journal}; PRAGMA synchronous={synchronous};"
-                " PRAGMA foreign_keys=ON;"
+                # Without the last, REPLACE would delete a sealed row past its trigger.
+                " PRAGMA foreign_keys=ON; PRAGMA recursive_triggers=ON;"
             ),
         },
     }

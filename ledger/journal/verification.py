@@ -21,6 +21,8 @@ Progress = Callable[[int, int], None]
 """Called with how many entries are done, and of how many."""
 
 _TILE_LEVELS_MAX = 8
+# A journal that is broken throughout is not told entry by entry.
+_PROBLEMS_MAX = 1_000
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -39,7 +41,8 @@ class Problem:
 def verify(*, commons_id: int, progress: Progress) -> tuple[Problem, ...]:
     """Return what is broken up to the head of this moment, the first entry first.
 
-    Reads by ranges of numbers, each a short read; posting may go on meanwhile.
+    Reads by ranges of numbers, each a short read; posting may go on meanwhile. Gives up when it has
+    found a thousand problems.
 
     :raises JournalNotOpen: if the commons has no journal.
     """
@@ -55,9 +58,16 @@ def verify(*, commons_id: int, progress: Progress) -> tuple[Problem, ...]:
         for entry in part:
             reading.take(entry, originals)
         progress(part[-1].number, head.size)
+        if len(reading.problems) >= _PROBLEMS_MAX:
+            return _in_order(reading.problems)
     reading.finish()
-    problems = [*reading.problems, *_beyond_the_head(commons_id), *_triggers()]
-    return tuple(sorted(problems, key=lambda one: (one.number is None, one.number or 0)))
+    return _in_order([*reading.problems, *_beyond_the_head(commons_id), *_triggers()])
+
+
+def _in_order(problems: list[Problem]) -> tuple[Problem, ...]:
+    return tuple(
+        sorted(problems, key=lambda one: (one.number is None, one.number or 0, one.invariant))
+    )
 
 
 class _Reading:
@@ -114,6 +124,7 @@ class _Tree:
         self.is_whole = True
         self.leaves: list[bytes] = []
         self.doubtful: dict[int, bytes | None] = {}
+        self.told: set[int] = set()
         self.levels: list[list[bytes]] = [[] for _ in range(_TILE_LEVELS_MAX + 1)]
         self.places = [0] * (_TILE_LEVELS_MAX + 1)
 
@@ -139,10 +150,12 @@ class _Tree:
         for level in reversed(range(size.bit_length())):
             if size >> level & 1:
                 place = bin(size >> level).count("1") - 1
-                if place >= len(edge) or edge[place] != found[place]:
-                    span = f"entries {start + 1:,}–{start + (1 << level):,}"
+                stop = start + (1 << level)
+                differs = place >= len(edge) or edge[place] != found[place]
+                if differs and not self._is_told(start, stop):
+                    span = f"entries {start + 1:,}–{stop:,}"
                     yield from _one("I2", start + 1, f"{span} do not give the head's open edge")
-                start += 1 << level
+                start = stop
         if len(edge) != len(found) or tree.root_of_edge(found) != bytes(self.head.root):
             yield from _one("I2", None, "the tree's root is not the head's")
 
@@ -164,13 +177,15 @@ class _Tree:
         stored = () if row is None else columns.tile_hashes(bytes(row.hashes))
         if level == 0:
             yield from self._doubts(dict(enumerate(stored, start=first)))
+        width = columns.TILE_WIDTH**level
         if row is None:
             yield from _one("I2", first, f"tile {level}/{place} is missing")
         elif stored != tuple(hashes) or bytes(row.root) != root:
-            step = columns.TILE_WIDTH**level
-            differs = [at for at, one in enumerate(stored[: len(hashes)]) if one != hashes[at]]
-            number = first + (differs[0] if differs else 0) * step
-            yield from _one("I2", number, f"tile {level}/{place} holds other hashes")
+            pairs = enumerate(zip(stored, hashes, strict=False))
+            at = next((at for at, (one, other) in pairs if one != other), 0) * width
+            if not self._is_told(first - 1 + at, first - 1 + at + width):
+                self.told.add(first + at)
+                yield from _one("I2", first + at, f"tile {level}/{place} holds other hashes")
         upper = self.levels[level + 1]
         upper.append(root)
         if len(upper) == columns.TILE_WIDTH:
@@ -180,8 +195,13 @@ class _Tree:
     def _doubts(self, sealed: Mapping[int, bytes]) -> Iterator[Problem]:
         """Say of entries whose columns do not give their leaf hash which of the two moved."""
         for number, derived in self.doubtful.items():
+            self.told.add(number)
             yield from _one("I2", number, _what_moved(derived, sealed.get(number)))
         self.doubtful = {}
+
+    def _is_told(self, after: int, up_to: int) -> bool:
+        """Return whether a nearer cause was named among some entries."""
+        return any(after < number <= up_to for number in self.told)
 
 
 def _what_moved(derived: bytes | None, sealed: bytes | None) -> str:

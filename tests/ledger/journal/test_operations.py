@@ -192,7 +192,7 @@ class TestKeys:
     def test_another_content_under_the_key_is_refused(
         self, append: Append, changes: dict[str, Any]
     ) -> None:
-        named = {"key": "k", "device": "phone"}
+        named: dict[str, Any] = {"key": "k", "device": "phone"}
         append(draft(**named, texts={"note": "at dawn"}))
         with pytest.raises(operations.KeyReused) as refused:
             append(draft(**named, **({"texts": {"note": "at dawn"}} | changes)))
@@ -408,3 +408,32 @@ class TestStop:
             operations.stop(commons_id=9, why="x")
         with pytest.raises(queries.JournalNotOpen):
             queries.why_stopped(commons_id=9)
+
+
+class TestHold:
+    """Whoever holds the head keeps every writer out until the transaction ends."""
+
+    @pytest.mark.django_db
+    def test_without_journal(self) -> None:
+        with pytest.raises(queries.JournalNotOpen):
+            operations.hold(commons_id=9)
+
+    def test_a_writer_waits(self, committing_db: CommittingDatabase, append: Append) -> None:
+        append(draft())
+        about_to_write = threading.Event()
+
+        def write() -> None:
+            about_to_write.set()
+            append(draft())
+            connections["default"].close()
+
+        writer = threading.Thread(target=write)
+        with transaction.atomic():
+            operations.hold(commons_id=COMMONS)
+            writer.start()
+            about_to_write.wait()
+            writer.join(timeout=0.3)
+            assert writer.is_alive()
+            assert queries.head(commons_id=COMMONS).size == 1
+        writer.join(timeout=20)
+        assert queries.head(commons_id=COMMONS).size == 2

@@ -6,6 +6,7 @@ section 2.1.
 """
 
 from hashlib import sha256
+from typing import Any
 
 import pytest
 from hypothesis import given
@@ -223,14 +224,14 @@ def test_spoilt_consistency_proofs_are_refused(data: st.DataObject) -> None:
 
 
 def test_equal_sizes_need_an_empty_proof_and_equal_roots() -> None:
-    same = {"old_size": 5, "size": 5, "old_root": ROOT_OF[5]}
+    same: dict[str, Any] = {"old_size": 5, "size": 5, "old_root": ROOT_OF[5]}
     assert tree.verify_consistency(**same, root=ROOT_OF[5], proof=())
     assert not tree.verify_consistency(**same, root=ROOT_OF[5], proof=(MANY[0],))
     assert not tree.verify_consistency(**same, root=ROOT_OF[6], proof=())
 
 
 def test_the_empty_tree_is_a_prefix_of_every_tree() -> None:
-    empty = {"old_size": 0, "size": 5, "root": ROOT_OF[5]}
+    empty: dict[str, Any] = {"old_size": 0, "size": 5, "root": ROOT_OF[5]}
     assert tree.verify_consistency(**empty, old_root=ROOT_OF[0], proof=())
     assert not tree.verify_consistency(**empty, old_root=ROOT_OF[1], proof=())
     assert not tree.verify_consistency(**empty, old_root=ROOT_OF[0], proof=(MANY[0],))
