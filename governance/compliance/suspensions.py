@@ -19,14 +19,14 @@ def taken_while_suspended(
 
     :param live: the days of the season on which this edition is in force.
     """
-    suspended = laid.member_days(
+    held = [
         (position, each.during)
         for position, member in enumerate(laid.holders.members)
         for each in member.suspended
-    )
-    if not suspended.any():
+    ]
+    if not held:
         return ()
-    cells = (suspended & live).ravel()
+    cells = (laid.member_days(held) & live).ravel()
     return tuple(
         _finding(
             book=book,

@@ -12,6 +12,7 @@ from tests.bench import rounds
 BENCHES = (
     "posting",
     "posting_batch",
+    "judging",
 )
 SIZES = ("small", "full")
 

@@ -2,6 +2,7 @@ from datetime import date
 
 import pytest
 
+from governance import facts
 from governance.bylaws import editions
 from governance.compliance import findings, judge
 from governance.periods import OPEN_END, DateRange, Per
@@ -109,6 +110,51 @@ class TestEditions:
             as_of=scenes.AFTER,
         )
         assert [(one.edition, one.key.window.first.day) for one in answer] == [(4, 14), (5, 15)]
+
+    @pytest.mark.parametrize(
+        "clause",
+        [
+            scenes.closed(zones=()),
+            scenes.order_clause(),
+            scenes.reporting_duty(),
+            scenes.limit(more_than="1 kg"),
+        ],
+        ids=lambda clause: type(clause).__name__,
+    )
+    @pytest.mark.parametrize("suspended", [False, True])
+    def test_each_day_is_found_once_by_its_own_edition(self, clause, suspended):
+        change = date(2026, 4, 15)
+        ranges = (
+            DateRange(first=date(2020, 1, 1), until=change),
+            DateRange(first=change, until=OPEN_END),
+        )
+        books = tuple(
+            scenes.book(clause, edition=edition, in_force=in_force)
+            for edition, in_force in zip((4, 5), ranges, strict=True)
+        )
+        order = facts.Order(
+            entry=77,
+            authority="the authority",
+            resource="clams",
+            zones=(),
+            during=scenes.days(date(2026, 4, 1), date(2026, 4, 30)),
+        )
+        takes = [
+            Take(entry=day, member=2, day=date(2026, 4, day), kg=2, delay_min=3_000)
+            for day in (14, 15)
+        ]
+        while_suspended = {"9.9": scenes.ALWAYS} if suspended else {}
+        answer = judge.judge(
+            editions=editions.Editions(books=books),
+            facts=scenes.season(
+                takes, members=(scenes.member(2, suspended=while_suspended),), orders=(order,)
+            ),
+            as_of=scenes.AFTER,
+        )
+        expected = [(clause.head.id, 4, (14,)), (clause.head.id, 5, (15,))]
+        if suspended:
+            expected += [("9.9", 4, (14,)), ("9.9", 5, (15,))]
+        assert [(one.key.clause, one.edition, one.entries) for one in answer] == expected
 
     def test_a_clause_that_comes_in_mid_window_judges_from_the_next_window(self):
         change = date(2026, 4, 15)

@@ -232,17 +232,18 @@ class TestAllotments:
         assert (one.limit, one.breach) == (0, 1)
 
     def test_a_very_large_allotment_keeps_its_exact_ceiling(self):
-        # 3 % of 4,000,000,000,000,033 are 120,000,000,000,000.99, rounded down.
-        large, ceiling = 4_000_000_000_000_033, 4_120_000_000_000_033
-        at_it = scenes.season(
-            (Take(entry=1, kg=Fraction(ceiling, 1000)),), allotments={("clams", 1): large}
+        # 40,000,000,000,003 g and 33.3333 % are 53,333,320,000,003.999999 g, rounded down; the
+        # product with the numerator 333,333 alone would pass 64 bits.
+        clause = scenes.limit(
+            more_than=None, per=Per.SEASON, tolerance=quantities.percent("33.3333 %")
         )
-        assert found(self.CLAUSE, at_it) == ()
-        beyond = scenes.season(
-            (Take(entry=1, kg=Fraction(ceiling + 1, 1000)),), allotments={("clams", 1): large}
-        )
-        (one,) = found(self.CLAUSE, beyond)
-        assert (one.breach, one.overuse) == (1, 120_000_000_000_001)
+        allotments = {("clams", 1): 40_000_000_000_003}
+        ceiling = 53_333_320_000_003
+        at_it = scenes.season((Take(entry=1, kg=ceiling * GRAM),), allotments=allotments)
+        assert found(clause, at_it) == ()
+        beyond = scenes.season((Take(entry=1, kg=(ceiling + 1) * GRAM),), allotments=allotments)
+        (one,) = found(clause, beyond)
+        assert (one.breach, one.overuse) == (1, 13_333_320_000_001)
 
 
 class TestUnits:
