@@ -109,7 +109,7 @@ def advise(
         resource=request.units.resource,
         clause=request.clause.head.id,
         season=request.season,
-        method="A growth model is fitted to the catches and the index; a rule reads the take from it.",
+        method="A growth model is fitted to catches and an index; a rule reads the take from it.",
         model=_model_words(method),
         data_first_year=series.years[0],
         data_last_year=series.years[-1],
@@ -184,6 +184,12 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable | None:
         limit=stock.levels.biomass_of(level, stock.plausible.K),
         order=stock.fit.setting.order,
     )
+    under_rule = projection.under_rule(
+        ahead=stock.ahead,
+        rule=stock.rule,
+        limit=stock.levels.biomass_of(level, stock.plausible.K),
+        order=stock.fit.setting.order,
+    )
     at_most = None if bound is None else float(bound.at_most)
     return RiskTable(
         limit=stock.base_units(stock.levels.biomass(level)),
@@ -192,6 +198,7 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable | None:
         horizon_years=SEASONS,
         at_most=at_most,
         runs=DRAWS,
+        under_rule=float(under_rule.below_ever),
         rows=tuple(
             RiskRow(
                 candidate=amount,

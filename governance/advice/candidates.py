@@ -21,9 +21,9 @@ def spread(*, named: tuple[int, ...], unit_size: int) -> tuple[int, ...]:
 
 
 def _round_step(least: int) -> int:
-    """Return the least of 1, 2, 2.5, 5 times a power of ten (as whole numbers) that reaches it."""
+    """Return the least round whole number that reaches it, such as 1,500 for 1,199."""
     power: int = 10 ** max(0, math.floor(math.log10(least)))
-    for tenths in (10, 20, 25, 50, 100):
+    for tenths in (10, 15, 20, 25, 30, 40, 50, 60, 80, 100):
         step = tenths * power // 10
         if step >= least and tenths * power % 10 == 0:
             return step

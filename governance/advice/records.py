@@ -44,7 +44,9 @@ class RiskTable:
     ``limit`` is the level in base units, ``limit_words`` what it is ("a fifth of the stock without
     any take"); ``at_most`` is the chance that the book accepts (None where it names none) of being
     below it within ``horizon_years``; ``cut_words`` says what a row's ``chance_cut`` is the chance
-    of ("the next allowable is lower").
+    of ("the next allowable is lower"). A candidate is taken every season whatever comes;
+    ``under_rule`` is the chance of ever being below the level where the book's rule sets the take
+    anew each season from the stock as it then is.
     """
 
     limit: int
@@ -53,6 +55,7 @@ class RiskTable:
     horizon_years: int
     at_most: float | None
     runs: int
+    under_rule: float
     rows: tuple[RiskRow, ...]
 
 

@@ -229,7 +229,7 @@ def charge_due(
     due = queries.due_account(kind=kind, member=member)
     return commons.enter(
         commons_id=commons_id,
-        kind="due_charged",
+        kind=queries.DUE_CHARGED,
         facts={"due": kind, "amount": amount, "case": case},
         subject=member,
         postings=_moved(
@@ -281,7 +281,7 @@ def give_back(
         receiving = seasons.pool_account(season=season)
     return commons.enter(
         commons_id=commons_id,
-        kind="given_back",
+        kind=queries.GIVEN_BACK,
         facts={"season": season, "amount": amount, "case": case},
         subject=member,
         postings=_moved(

@@ -17,6 +17,8 @@ from ledger.seasons import queries as seasons
 WITHDRAWAL = "withdrawal"
 WORK = "work_given"
 MONEY_INSTEAD = "money_given_instead"
+DUE_CHARGED = "due_charged"
+GIVEN_BACK = "given_back"
 
 # Dues are kept apart by what they are for: a fine is never mixed with what is given back.
 FINE = "fine"
@@ -38,6 +40,15 @@ class DutyStanding:
     worked: int
     paid_instead: int
     owed: int
+
+    def plus(self, other: "DutyStanding") -> "DutyStanding":
+        """Return two duties added up."""
+        return DutyStanding(
+            assessed=self.assessed + other.assessed,
+            worked=self.worked + other.worked,
+            paid_instead=self.paid_instead + other.paid_instead,
+            owed=self.owed + other.owed,
+        )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -336,7 +336,7 @@ class ObservationRow:
     resource: str
     kind: str
     zone: str
-    day: date
+    year: int
     value: Fraction
     unit: str
 

@@ -64,9 +64,9 @@ def percent(share: Fraction | float) -> str:
 def chance(probability: float) -> str:
     """Write a chance as people count and as a percentage: 0.146 is ``3 in 20 (14.6 %)``."""
     if probability < _HALF_OF_A_TWENTIETH:
-        words = "fewer than 1 in 40" if probability else "in no run"
+        words = "under 1 in 40" if probability else "in no run"
     elif probability > 1 - _HALF_OF_A_TWENTIETH:
-        words = "more than 39 in 40" if probability < 1 else "in every run"
+        words = "over 39 in 40" if probability < 1 else "in every run"
     else:
         count = quantities.rounded(probability * 20, quantities.Rounding.HALF_UP)
         words = f"{count} in 20"

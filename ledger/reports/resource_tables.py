@@ -149,7 +149,10 @@ def _risk_note(advice: Advice, *, resource: ResourceFigures) -> str:
     limit = numbers.rough_amount(table.limit, base=resource.base, unit=resource.unit)
     # The widest half-interval of a share seen in so many independent runs, at 95 %.
     error = 1.96 * 0.5 / math.sqrt(table.runs)
-    sentences = [f"The level is {limit}."]
+    sentences = [
+        f"The level is {limit}. Each allowable is tried as if taken every year whatever comes; set"
+        f" anew each year by the rule, the chance is {numbers.chance(table.under_rule)}."
+    ]
     if table.at_most is not None:
         sentences.append(
             f"The book accepts a chance of at most {numbers.percent(table.at_most)};"
@@ -212,13 +215,13 @@ def observations(figures: SeasonFigures) -> Table:
     return Table(
         sheet=Sheet.OBSERVATIONS,
         caption="Observations of the resources",
-        columns=("Resource", "Kind", "Zone", "Day", "Value", "Unit"),
+        columns=("Resource", "Kind", "Zone", "Year", "Value", "Unit"),
         rows=tuple(
             (
                 outline.text(figures.resource(row.resource).name),
                 outline.text(row.kind),
                 outline.text(row.zone),
-                outline.day(row.day),
+                outline.label_number(row.year),
                 outline.exact(row.value),
                 outline.text(numbers.unit_word(row.unit)),
             )

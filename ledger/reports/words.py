@@ -181,8 +181,9 @@ def _risk_of_proposal(row: Advice) -> str:
     if not tried:
         return ""
     return (
-        f" With it, the chance of falling below {row.risk.limit_words} within"
-        f" {row.risk.horizon_years} years is {numbers.chance(tried[0].chance_below)}."
+        f" Taken every year whatever comes, the chance of falling below {row.risk.limit_words}"
+        f" within {row.risk.horizon_years} years is {numbers.chance(tried[0].chance_below)}; set"
+        f" anew each year by the rule, it is {numbers.chance(row.risk.under_rule)}."
     )
 
 

@@ -61,7 +61,12 @@ def taken_account(*, season: str, member: int) -> str:
 
 def carried_account(*, resource: str, member: int) -> str:
     """Name the account of what goes on to a member's next season; below zero when owed."""
-    return f"carried:{resource}:{member}"
+    return f"{carried_prefix(resource=resource)}{member}"
+
+
+def carried_prefix(*, resource: str) -> str:
+    """Return how the names of all the carried accounts of a resource begin."""
+    return f"carried:{resource}:"
 
 
 def seasons(*, commons_id: int) -> Mapping[str, SeasonRecord]:
@@ -129,9 +134,9 @@ def allotments(*, commons_id: int, season: str, up_to: int | None = None) -> Map
 
     Of a closed season, as it stood before the close.
     """
-    closed = models.Close.objects.filter(commons_id=commons_id, season=season).first()
+    closed = close_entry(commons_id=commons_id, season=season)
     if closed is not None:
-        before = closed.entry_number - 1
+        before = closed - 1
         up_to = before if up_to is None else min(up_to, before)
     remaining = left(commons_id=commons_id, season=season, up_to=up_to)
     used = taken(commons_id=commons_id, season=season, up_to=up_to)
@@ -141,9 +146,15 @@ def allotments(*, commons_id: int, season: str, up_to: int | None = None) -> Map
     }
 
 
+def close_entry(*, commons_id: int, season: str) -> int | None:
+    """Return the number of the entry that closed a season; None while it is open."""
+    closed = models.Close.objects.filter(commons_id=commons_id, season=season).first()
+    return None if closed is None else closed.entry_number
+
+
 def carried(*, commons_id: int, resource: str) -> Mapping[int, int]:
     """Return what waits for each member's next season; below zero is owed."""
-    return _by_member(commons_id=commons_id, prefix=f"carried:{resource}:", up_to=None)
+    return _by_member(commons_id=commons_id, prefix=carried_prefix(resource=resource), up_to=None)
 
 
 def pool(*, commons_id: int, season: str) -> int:

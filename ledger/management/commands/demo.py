@@ -1,22 +1,94 @@
 """Play the invented season of the Tarrin Bay Fishing Cooperative, and write its report."""
 
-from django.core.management.base import BaseCommand
+import sys
+from datetime import date
+from pathlib import Path
+from time import monotonic
+from typing import Any
+
+from django.conf import settings
+from django.core.management.base import BaseCommand, CommandError
+from django.db import connection
+from django.db.migrations.executor import MigrationExecutor
+
+from ledger.commons import queries as commons
+from ledger.foundation.clocks import seeded_chance
+from ledger.management import playing, scenario
+from ledger.management.scenario_cells import ScenarioError
+from ledger.management.stage import Play
+from ledger.reports import collecting, html, pdf, text, xlsx
+from ledger.reports.figures import SeasonFigures, digest
+
+FOLDER = Path(settings.ROOT) / "fixtures" / "tarrin_bay"
+SEED = 20260301
+ACCOUNT = ("summary", "findings", "standing", "resource-*", "next", "cautions")
+STEP_DAYS = 14
 
 
 class Command(BaseCommand):
-    """Play a scenario."""
+    """Play one invented season, from the opening of the book to the board's report."""
 
-    def handle(self, *args: object, **options: object) -> None:
-        """Run."""
-        from pathlib import Path
-        from ledger.management import playing, scenario
-        from ledger.foundation.clocks import seeded_chance
-        folder = Path("fixtures/tarrin_bay")
-        import time
-        t=time.time()
-        play = playing.begin(scenario=scenario.read(folder=folder), book=(folder/"bylaws.yaml").read_text(), slug=f"tarrin-bay-{int(t)}", chance=seeded_chance(1))
-        print("begun", time.time()-t)
-        for day in playing.play_on(play=play):
-            if day.day in (1, 15): print(day, round(time.time()-t,1))
-        from ledger.journal import queries
-        print(queries.proof_line(queries.head(commons_id=play.commons_id)))
+    help = (
+        "Play an invented season through the book, print its account, and write the season report"
+        " as HTML, PDF and XLSX. Every run founds a commons of its own, marked as a demo; no other"
+        " commons is touched."
+    )
+
+    def handle(self, *args: Any, **options: Any) -> None:
+        """Play, tell, write."""
+        _check_tables()
+        started = monotonic()
+        slug = _free_slug()
+        try:
+            story = scenario.read(folder=FOLDER)
+        except ScenarioError as error:
+            raise CommandError(str(error)) from error
+        self.stdout.write(
+            f"{story.commons.name}: an invented commons, invented people, invented figures.\n"
+            f"Playing {len(story.landings):,} slips, {len(story.inspections)} checks and every case"
+            f" into the demo commons {slug!r}."
+        )
+        book = (FOLDER / "bylaws.yaml").read_text(encoding="utf-8")
+        play = playing.begin(scenario=story, book=book, slug=slug, chance=seeded_chance(SEED))
+        for place, day in enumerate(playing.play_on(play=play)):
+            if place % STEP_DAYS == 0:
+                self._progress(play, day)
+        self._progress(play, play.clock.now.date())
+        first = story.commons.seasons[0].during.first
+        figures = collecting.season_figures(
+            commons_id=play.commons_id, first=first, made_at=play.clock.now
+        )
+        for line in text.season_text(figures, keys=ACCOUNT):
+            self.stdout.write(line)
+        folder = _write(figures, slug)
+        self.stdout.write("")
+        self.stdout.write(figures.proof)
+        self.stdout.write(f"figures {digest(figures)}")
+        self.stdout.write(f"The season report is in {folder}: report.html, report.pdf, report.xlsx")
+        self.stdout.write(f"Done in {monotonic() - started:.0f} seconds.")
+
+    def _progress(self, play: Play, day: date) -> None:
+        self.stderr.write(f"  {day}  {len(play.entered):>5,} slips entered", ending="\n")
+        sys.stderr.flush()
+
+
+def _check_tables() -> None:
+    executor = MigrationExecutor(connection)
+    if executor.migration_plan(executor.loader.graph.leaf_nodes()):
+        raise CommandError("The database has no tables yet, or old ones: run migrate first.")
+
+
+def _free_slug() -> str:
+    """Return a name that no commons has: each run plays in a commons of its own."""
+    taken = {record.slug for record in commons.every_commons()}
+    numbered = (f"tarrin-bay-demo-{number}" for number in range(1, len(taken) + 2))
+    return next(slug for slug in numbered if slug not in taken)
+
+
+def _write(figures: SeasonFigures, slug: str) -> Path:
+    folder = Path(settings.OUTPUT) / slug
+    folder.mkdir(parents=True, exist_ok=True)
+    (folder / "report.html").write_text(html.season_html(figures), encoding="utf-8")
+    (folder / "report.pdf").write_bytes(pdf.season_pdf(figures))
+    (folder / "report.xlsx").write_bytes(xlsx.season_xlsx(figures))
+    return folder

@@ -148,6 +148,7 @@ def _risk() -> advised.RiskTable:
         horizon_years=20,
         at_most=0.05,
         runs=10_000,
+        under_rule=0.011,
         rows=tuple(reversed(rows)),
     )
 
@@ -347,7 +348,7 @@ def _observations() -> tuple[figures.ObservationRow, ...]:
             resource="clams",
             kind="ground survey",
             zone=zone,
-            day=date(2026, 2, 3 + index),
+            year=2026,
             value=Fraction(18_250 + 2_575 * index),
             unit="kg",
         )
@@ -357,7 +358,7 @@ def _observations() -> tuple[figures.ObservationRow, ...]:
         resource="mullet",
         kind="survey index",
         zone="",
-        day=date(2026, 2, 20),
+        year=2026,
         value=Fraction(9_713, 10_000),
         unit="1",
     )

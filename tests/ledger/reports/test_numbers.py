@@ -12,13 +12,13 @@ from ledger.reports import numbers, outline
     ("probability", "words"),
     [
         (0.0, "in no run (0.0 %)"),
-        (0.0004, "fewer than 1 in 40 (0.0 %)"),
-        (0.0249, "fewer than 1 in 40 (2.5 %)"),
+        (0.0004, "under 1 in 40 (0.0 %)"),
+        (0.0249, "under 1 in 40 (2.5 %)"),
         (0.025, "1 in 20 (2.5 %)"),
         (0.146, "3 in 20 (14.6 %)"),
         (0.5, "10 in 20 (50.0 %)"),
         (0.975, "20 in 20 (97.5 %)"),
-        (0.98, "more than 39 in 40 (98.0 %)"),
+        (0.98, "over 39 in 40 (98.0 %)"),
         (1.0, "in every run (100.0 %)"),
     ],
 )
