@@ -6,6 +6,7 @@ import math
 import re
 from collections.abc import Mapping
 from dataclasses import dataclass
+from decimal import Decimal
 from fractions import Fraction
 from typing import ClassVar
 
@@ -31,6 +32,36 @@ class UnreadableQuantity(StintbookError):
 
     code: ClassVar[str] = "quantities.unreadable"
     message: ClassVar[str] = "Found {found!r}; accepted is {accepted}."
+
+
+class UnusableNumber(StintbookError):
+    """A number is not finite, or longer than any measure is."""
+
+    code: ClassVar[str] = "quantities.unusable_number"
+    message: ClassVar[str] = (
+        "Found the number {found}; accepted are at most {digits} digits before the point and"
+        " {places} after it."
+    )
+
+
+# How long a number as given may be, before and after the point.
+NUMBER_DIGITS, NUMBER_PLACES = 12, 12
+
+
+def exact(given: Decimal) -> Fraction:
+    """Return a number as people give it, exactly.
+
+    :raises UnusableNumber: if it is not finite, or longer than any measure is.
+    """
+    exponent = given.as_tuple().exponent
+    # Looked at before a fraction is made of it: 1E999999 is a short text and a very long number.
+    if (
+        not isinstance(exponent, int)
+        or exponent < -NUMBER_PLACES
+        or given.adjusted() >= NUMBER_DIGITS
+    ):
+        raise UnusableNumber(found=f"{given:.6g}", digits=NUMBER_DIGITS, places=NUMBER_PLACES)
+    return Fraction(given)
 
 
 class Rounding(enum.StrEnum):

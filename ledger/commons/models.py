@@ -55,19 +55,29 @@ class Member(models.Model):
     class Meta:
         constraints = [
             models.UniqueConstraint(fields=["commons", "number"], name="member_number_once"),
+            # 0 stands for the book itself, where no person acts.
+            models.CheckConstraint(
+                condition=models.Q(number__gte=1), name="member_number_from_one"
+            ),
         ]
 
 
 class DatedRow(AppendOnlyModel):
     """A fact that holds on some days; the entry that says so; never rewritten."""
 
-    commons = models.ForeignKey(Commons, on_delete=models.PROTECT)
+    commons = models.ForeignKey(Commons, on_delete=models.PROTECT, related_name="+")
     first_day = models.DateField()
     until_day = models.DateField()
     entry_number = models.BigIntegerField()
 
-    class Meta:
+    class Meta(AppendOnlyModel.Meta):
         abstract = True
+        constraints = [
+            models.CheckConstraint(
+                condition=models.Q(until_day__gt=models.F("first_day")),
+                name="%(class)s_holds_a_day",
+            ),
+        ]
 
 
 class MemberClass(DatedRow):
@@ -85,8 +95,9 @@ class Share(DatedRow):
     numerator = models.BigIntegerField()
     denominator = models.BigIntegerField()
 
-    class Meta:
+    class Meta(DatedRow.Meta):
         constraints = [
+            *DatedRow.Meta.constraints,
             models.CheckConstraint(
                 condition=models.Q(numerator__gt=0, denominator__gt=0), name="share_is_positive"
             ),
@@ -108,9 +119,11 @@ class Suspension(DatedRow):
 
 
 class OutsideOrder(DatedRow):
-    """A command of an outside authority that closes zones of a resource."""
+    """A command of an outside authority that closes zones of a resource.
+
+    Its notice stands among the texts of its entry, from which it can be erased.
+    """
 
     authority = models.CharField(max_length=200)
     resource = models.CharField(max_length=40)
     zones = models.JSONField()
-    notice = models.TextField()

@@ -1,14 +1,15 @@
 """The writers of the commons: each act is an entry, with its row beside it."""
 
+import re
+import zoneinfo
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
-from datetime import date
 from fractions import Fraction
 from typing import Any, ClassVar
 
 from governance import quantities
-from governance.periods import OPEN_END, DateRange
-from ledger.commons import models, queries
+from governance.periods import DateRange
+from ledger.commons import models, queries, writing
+from ledger.commons.writing import Admission, AlreadyKept, NewResource
 from ledger.foundation import transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
@@ -17,12 +18,16 @@ from ledger.journal.leaves import Draft, Fact, Posting, Receipt
 
 ROLES = ("secretary", "monitor", "board", "auditor")
 
+_CODE_SIGNS = 40
+
 
 class UnknownMember(LedgerError):
     """No member has this number."""
 
     code: ClassVar[str] = "commons.unknown_member"
-    message: ClassVar[str] = "Found the member number {found}; the commons has none such."
+    message: ClassVar[str] = (
+        "Found the member number {found}; accepted are the numbers of those who were admitted."
+    )
 
 
 class UnknownZone(LedgerError):
@@ -39,35 +44,23 @@ class UnknownRole(LedgerError):
     message: ClassVar[str] = "Found the role {found!r}; accepted are {accepted}."
 
 
-class AlreadyKept(LedgerError):
-    """The commons has this member, resource or zone already."""
+class UnknownTimeZone(LedgerError):
+    """The time zone is not in the database of time zones."""
 
-    code: ClassVar[str] = "commons.already_kept"
-    message: ClassVar[str] = "The commons has the {what} {found} already."
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class NewResource:
-    """A resource to be kept, with its zones as (code, name)."""
-
-    code: str
-    name: str
-    unit: str
-    base: str
-    zones: tuple[tuple[str, str], ...]
+    code: ClassVar[str] = "commons.unknown_time_zone"
+    message: ClassVar[str] = (
+        "Found the time zone {found!r}; accepted are names such as 'Europe/Dublin'."
+    )
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Admission:
-    """A member to be admitted: class and shares hold from ``admitted_on`` until further notice."""
+class UnusableCode(LedgerError):
+    """A code holds signs that could not stand in the name of an account."""
 
-    number: int
-    name: str
-    household: int
-    membership_class: str
-    shares: tuple[tuple[str, Fraction], ...]
-    draw_point: str
-    admitted_on: date
+    code: ClassVar[str] = "commons.unusable_code"
+    message: ClassVar[str] = (
+        "Found {found!r} as the code of a {what}; accepted are 1 to {most} letters, digits, '-'"
+        " and '_'."
+    )
 
 
 @transactions.required
@@ -81,7 +74,10 @@ def enter(
     subject: int | None = None,
     postings: tuple[Posting, ...] = (),
 ) -> Receipt:
-    """Append one entry that happens as it is written, on the commons' own day."""
+    """Append one entry that happens as it is written, on the commons' own day.
+
+    :raises ledger.commons.queries.UnknownCommons: if there is no such commons.
+    """
     now = hand.clock()
     draft = Draft(
         kind=kind,
@@ -115,31 +111,18 @@ def found(
 ) -> int:
     """Found a commons with its resources and an empty journal; return its id.
 
-    :raises AlreadyKept: if a commons has this short name.
+    :raises AlreadyKept: if a commons has this short name, or a code stands twice.
+    :raises UnusableCode: if the short name or a code holds other signs than a code may.
+    :raises ledger.commons.writing.UnusableText: if a name is empty or too long.
+    :raises UnknownTimeZone: if the time zone has no entry in the database of time zones.
     :raises governance.quantities.UnknownUnit: if a unit or the money is not in the tables.
     :raises governance.quantities.UnitMismatch: if a base unit does not measure what its unit does.
     """
-    if models.Commons.objects.filter(slug=slug).exists():
-        raise AlreadyKept(what="name", found=slug)
-    quantities.currency_places(money)
-    for resource in resources:
-        quantities.converted(Fraction(1), from_unit=resource.unit, to_unit=resource.base)
-    commons = models.Commons.objects.create(
-        slug=slug, name=name, zone=zone, money=money, is_demo=is_demo
+    _check_founding(slug=slug, name=name, zone=zone, money=money, resources=resources)
+    commons_id = writing.insert_commons(
+        slug=slug, name=name, zone=zone, money=money, resources=resources, is_demo=is_demo
     )
-    journal.open_journal(commons_id=commons.pk, clock=hand.clock, chance=hand.chance)
-    for resource in resources:
-        row = models.Resource.objects.create(
-            commons=commons,
-            code=resource.code,
-            name=resource.name,
-            unit=resource.unit,
-            base=resource.base,
-        )
-        models.Zone.objects.bulk_create(
-            models.Zone(commons=commons, resource=row, code=code, name=zone_name)
-            for code, zone_name in resource.zones
-        )
+    journal.open_journal(commons_id=commons_id, clock=hand.clock, chance=hand.chance)
     facts: dict[str, Fact] = {
         "zone": zone,
         "money": money,
@@ -153,8 +136,8 @@ def found(
             for resource in resources
         ],
     }
-    enter(commons_id=commons.pk, kind="commons_founded", facts=facts, hand=hand)
-    return commons.pk
+    enter(commons_id=commons_id, kind="commons_founded", facts=facts, hand=hand)
+    return commons_id
 
 
 @transactions.required
@@ -162,53 +145,28 @@ def admit(*, commons_id: int, admissions: Sequence[Admission], hand: Hand) -> tu
     """Admit members, each with a class and shares; one entry for each. Names stay outside it.
 
     :raises AlreadyKept: if a number is taken; numbers are never used again.
+    :raises ledger.commons.writing.UnusableMemberNumber: if a number cannot be a member's.
+    :raises ledger.commons.writing.UnknownHousehold: if a household is not a member's number.
+    :raises ledger.commons.writing.UnusableShare: if a share is not above zero or does not fit.
+    :raises ledger.commons.writing.UnusableText: if a name or a class is empty or too long.
     :raises ledger.commons.queries.UnknownResource: if a share is in a resource not kept.
     """
-    kept = queries.resources(commons_id=commons_id)
-    taken = queries.members(commons_id=commons_id)
-    for admission in admissions:
-        if admission.number in taken:
-            raise AlreadyKept(what="member number", found=admission.number)
-        for resource, _ in admission.shares:
-            if resource not in kept:
-                raise queries.UnknownResource(found=resource, accepted=", ".join(kept))
+    journal.hold(commons_id=commons_id)
+    writing.check_admissions(commons_id=commons_id, admissions=admissions)
+    commons = queries.commons(commons_id=commons_id)
     receipts = journal.append(
         commons_id=commons_id,
-        drafts=[_admission_draft(commons_id, admission, hand) for admission in admissions],
+        drafts=[
+            writing.admission_draft(commons=commons, admission=admission, hand=hand)
+            for admission in admissions
+        ],
         by=hand.by,
         clock=hand.clock,
         chance=hand.chance,
     )
-    numbered = list(zip(admissions, (receipt.number for receipt in receipts), strict=True))
-    models.Member.objects.bulk_create(
-        models.Member(
-            commons_id=commons_id,
-            number=admission.number,
-            name=admission.name,
-            household=admission.household,
-            draw_point=admission.draw_point,
-            entry_number=number,
-        )
-        for admission, number in numbered
-    )
-    models.MemberClass.objects.bulk_create(
-        models.MemberClass(
-            member=admission.number,
-            value=admission.membership_class,
-            **_since(commons_id, admission.admitted_on, number),
-        )
-        for admission, number in numbered
-    )
-    models.Share.objects.bulk_create(
-        models.Share(
-            member=admission.number,
-            resource=resource,
-            numerator=measure.numerator,
-            denominator=measure.denominator,
-            **_since(commons_id, admission.admitted_on, number),
-        )
-        for admission, number in numbered
-        for resource, measure in admission.shares
+    numbers = (receipt.number for receipt in receipts)
+    writing.insert_members(
+        commons_id=commons_id, numbered=list(zip(admissions, numbers, strict=True))
     )
     return receipts
 
@@ -231,7 +189,9 @@ def give_role(*, commons_id: int, member: int, role: str, during: DateRange, han
         hand=hand,
     )
     models.RoleHeld.objects.create(
-        member=member, role=role, **_dated(commons_id, during, receipt.number)
+        member=member,
+        role=role,
+        **writing.dated(commons_id=commons_id, during=during, entry=receipt.number),
     )
     return receipt
 
@@ -243,8 +203,10 @@ def suspend(
     """Record that a member may not take on some days, and which ladder orders it.
 
     :raises UnknownMember: if nobody has the number.
+    :raises ledger.commons.writing.UnusableText: if the clause id is empty or too long.
     """
     check_member(commons_id=commons_id, member=member)
+    writing.check_text(what="a clause id", text=clause, most=80)
     receipt = enter(
         commons_id=commons_id,
         kind="suspension",
@@ -254,7 +216,9 @@ def suspend(
         hand=hand,
     )
     models.Suspension.objects.create(
-        member=member, clause=clause, **_dated(commons_id, during, receipt.number)
+        member=member,
+        clause=clause,
+        **writing.dated(commons_id=commons_id, during=during, entry=receipt.number),
     )
     return receipt
 
@@ -273,14 +237,17 @@ def record_order(
     """Record an outside authority's order that closes zones of a resource.
 
     :raises ledger.commons.queries.UnknownResource: if the resource is not kept.
-    :raises UnknownZone: if a zone is not a part of the resource.
+    :raises UnknownZone: if a zone is not a part of the resource, or none is named.
+    :raises ledger.commons.writing.UnusableText: if the authority's name is empty or too long.
     """
     queries.resource(commons_id=commons_id, code=resource)
-    for zone in zones:
+    writing.check_text(what="the authority", text=authority, most=200)
+    # An order that names no zone would close nothing, and nobody would notice.
+    for zone in zones or ("",):
         check_zone(commons_id=commons_id, resource=resource, zone=zone)
     receipt = enter(
         commons_id=commons_id,
-        kind="outside_order",
+        kind=queries.ORDER,
         facts={"resource": resource, "zones": list(zones), **_range_facts(during)},
         texts={"authority": authority, "notice": notice},
         hand=hand,
@@ -289,8 +256,7 @@ def record_order(
         authority=authority,
         resource=resource,
         zones=list(zones),
-        notice=notice,
-        **_dated(commons_id, during, receipt.number),
+        **writing.dated(commons_id=commons_id, during=during, entry=receipt.number),
     )
     return receipt
 
@@ -300,7 +266,7 @@ def check_member(*, commons_id: int, member: int) -> None:
 
     :raises UnknownMember: if it has not.
     """
-    if not models.Member.objects.filter(commons_id=commons_id, number=member).exists():
+    if not queries.is_member(commons_id=commons_id, number=member):
         raise UnknownMember(found=member)
 
 
@@ -315,40 +281,42 @@ def check_zone(*, commons_id: int, resource: str, zone: str) -> None:
         if record.resource == resource
     ]
     if zone not in kept:
-        raise UnknownZone(found=zone, resource=resource, accepted=", ".join(kept))
+        raise UnknownZone(found=zone, resource=resource, accepted=", ".join(kept) or "none")
 
 
-def _admission_draft(commons_id: int, admission: Admission, hand: Hand) -> Draft:
-    now = hand.clock()
-    return Draft(
-        kind="member_admitted",
-        occurred_at=now,
-        day=queries.commons(commons_id=commons_id).day_of(now),
-        subject=admission.number,
-        facts={
-            "household": admission.household,
-            "class": admission.membership_class,
-            "shares": {
-                resource: f"{measure.numerator}/{measure.denominator}"
-                for resource, measure in admission.shares
-            },
-            "from": admission.admitted_on.isoformat(),
-        },
-    )
+def check_code(*, what: str, code: str, most: int = _CODE_SIGNS) -> None:
+    """Pass if a code can stand in the name of an account.
+
+    :raises UnusableCode: if it cannot.
+    """
+    if len(code) > most or not re.fullmatch(r"[A-Za-z0-9_-]+", code):
+        raise UnusableCode(what=what, found=code[: most + 1], most=most)
+
+
+def _check_founding(
+    *, slug: str, name: str, zone: str, money: str, resources: Sequence[NewResource]
+) -> None:
+    check_code(what="commons", code=slug, most=60)
+    writing.check_text(what="the name of the commons", text=name, most=writing.NAME_SIGNS)
+    if slug in {record.slug for record in queries.every_commons()}:
+        raise AlreadyKept(what="short name of a commons", found=f"the commons {slug}")
+    try:
+        zoneinfo.ZoneInfo(zone)
+    except (zoneinfo.ZoneInfoNotFoundError, ValueError, OSError):
+        # By the name's shape, Python refuses it in three ways.
+        raise UnknownTimeZone(found=zone) from None
+    quantities.currency_places(money)
+    seen: set[tuple[str, str]] = set()
+    for resource in resources:
+        quantities.converted(Fraction(1), from_unit=resource.unit, to_unit=resource.base)
+        zones = [("zone", *each) for each in resource.zones]
+        for what, code, called in [("resource", resource.code, resource.name), *zones]:
+            check_code(what=what, code=code)
+            writing.check_text(what=f"the name of {what} {code}", text=called, most=120)
+            if (what, code) in seen:
+                raise AlreadyKept(what=f"code of a {what}", found=f"the {what} {code}")
+            seen.add((what, code))
 
 
 def _range_facts(during: DateRange) -> dict[str, Any]:
     return {"from": during.first.isoformat(), "until": during.until.isoformat()}
-
-
-def _dated(commons_id: int, during: DateRange, entry_number: int) -> dict[str, Any]:
-    return {
-        "commons_id": commons_id,
-        "first_day": during.first,
-        "until_day": during.until,
-        "entry_number": entry_number,
-    }
-
-
-def _since(commons_id: int, first: date, entry_number: int) -> dict[str, Any]:
-    return _dated(commons_id, DateRange(first=first, until=OPEN_END), entry_number)

@@ -11,13 +11,16 @@ from governance import periods
 from governance.facts import Order, Roster
 from ledger.commons import columns, models
 from ledger.foundation.errors import LedgerError
+from ledger.journal import queries as journal
+
+ORDER = "outside_order"
 
 
 class UnknownCommons(LedgerError):
-    """No commons has this name."""
+    """No commons has this name or id."""
 
     code: ClassVar[str] = "commons.unknown_commons"
-    message: ClassVar[str] = "Found no commons {slug!r}; known are: {known}."
+    message: ClassVar[str] = "Found the commons {found!r}; accepted are {accepted}."
 
 
 class UnknownResource(LedgerError):
@@ -25,6 +28,13 @@ class UnknownResource(LedgerError):
 
     code: ClassVar[str] = "commons.unknown_resource"
     message: ClassVar[str] = "Found the resource {found!r}; accepted are {accepted}."
+
+
+class InstantWithoutOffset(LedgerError):
+    """An instant does not say how far its clock stands from UTC, so its day is not known."""
+
+    code: ClassVar[str] = "commons.instant_without_offset"
+    message: ClassVar[str] = "Found the instant {found}; accepted are instants with their offset."
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -39,7 +49,12 @@ class CommonsRecord:
     is_demo: bool
 
     def day_of(self, instant: datetime) -> date:
-        """Return the commons' calendar day of an instant."""
+        """Return the commons' calendar day of an instant.
+
+        :raises InstantWithoutOffset: if the instant has no offset.
+        """
+        if instant.tzinfo is None:
+            raise InstantWithoutOffset(found=instant.isoformat())
         return periods.local_day(instant, zone=self.zone)
 
 
@@ -74,7 +89,7 @@ class MemberRecord:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class OrderRecord:
-    """An outside order with its notice."""
+    """An outside order with its notice; the notice is empty once it was erased."""
 
     entry: int
     authority: str
@@ -96,9 +111,19 @@ def _record(row: models.Commons) -> CommonsRecord:
     )
 
 
+def _known_record(row: models.Commons | None, found: int | str) -> CommonsRecord:
+    if row is None:
+        accepted = ", ".join(record.slug for record in every_commons()) or "none yet"
+        raise UnknownCommons(found=found, accepted=accepted)
+    return _record(row)
+
+
 def commons(*, commons_id: int) -> CommonsRecord:
-    """Return a commons by its id."""
-    return _record(models.Commons.objects.get(pk=commons_id))
+    """Return a commons by its id.
+
+    :raises UnknownCommons: if there is none.
+    """
+    return _known_record(models.Commons.objects.filter(pk=commons_id).first(), commons_id)
 
 
 def every_commons() -> tuple[CommonsRecord, ...]:
@@ -111,11 +136,7 @@ def commons_named(*, slug: str) -> CommonsRecord:
 
     :raises UnknownCommons: if there is none.
     """
-    row = models.Commons.objects.filter(slug=slug).first()
-    if row is None:
-        known = ", ".join(record.slug for record in every_commons()) or "none"
-        raise UnknownCommons(slug=slug, known=known)
-    return _record(row)
+    return _known_record(models.Commons.objects.filter(slug=slug).first(), slug)
 
 
 def resources(*, commons_id: int) -> Mapping[str, ResourceRecord]:
@@ -158,6 +179,11 @@ def members(*, commons_id: int) -> Mapping[int, MemberRecord]:
     }
 
 
+def is_member(*, commons_id: int, number: int) -> bool:
+    """Return whether a number is a member's."""
+    return models.Member.objects.filter(commons_id=commons_id, number=number).exists()
+
+
 Row = TypeVar("Row", bound=models.DatedRow)
 
 
@@ -190,6 +216,8 @@ def orders(*, commons_id: int, up_to: int | None = None) -> tuple[Order, ...]:
 def order_records(*, commons_id: int) -> tuple[OrderRecord, ...]:
     """Return the outside orders with their notices, oldest first."""
     rows = _known(models.OutsideOrder.objects.all(), commons_id=commons_id, up_to=None)
+    entries = journal.entries(commons_id=commons_id, kinds=(ORDER,))
+    notices = {entry.number: entry.texts.get("notice", "") for entry in entries}
     return tuple(
         OrderRecord(
             entry=row.entry_number,
@@ -198,7 +226,7 @@ def order_records(*, commons_id: int) -> tuple[OrderRecord, ...]:
             zones=tuple(row.zones),
             first=row.first_day,
             until=row.until_day,
-            notice=row.notice,
+            notice=notices[row.entry_number],
         )
         for row in rows
     )
