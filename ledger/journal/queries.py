@@ -180,6 +180,44 @@ def rows(
     ]
 
 
+def kinds_and_subjects(
+    *,
+    commons_id: int,
+    after: int = 0,
+    up_to: int,
+    kinds: Collection[str] | None = None,
+    first_day: date | None = None,
+    until_day: date | None = None,
+) -> frozenset[tuple[str, int | None]]:
+    """Return which kinds of entry are about whom, each pair once, without reading the entries.
+
+    Reversals count like other entries.
+
+    :param until_day: the first day that no longer belongs.
+    """
+    found = models.Entry.objects.filter(commons_id=commons_id, number__gt=after, number__lte=up_to)
+    if kinds is not None:
+        found = found.filter(kind__in=kinds)
+    if first_day is not None:
+        found = found.filter(day__gte=first_day)
+    if until_day is not None:
+        found = found.filter(day__lt=until_day)
+    return frozenset(found.values_list("kind", "subject").distinct())
+
+
+def texts(*, commons_id: int, numbers: Collection[int]) -> dict[int, dict[str, str]]:
+    """Return the free texts of some entries by number and name; an erased text is left out."""
+    wanted = sorted(set(numbers))
+    found: dict[int, dict[str, str]] = {}
+    for first in range(0, len(wanted), columns.RANGE):
+        part = models.Text.objects.filter(
+            commons_id=commons_id, number__in=wanted[first : first + columns.RANGE]
+        )
+        for number, name, text in part.values_list("number", "name", "text"):
+            found.setdefault(number, {})[name] = text
+    return found
+
+
 def balance(*, commons_id: int, account: str, resource: str, unit: str) -> int:
     """Return what stands on an account now; nought where nothing was ever posted."""
     amount = (
