@@ -9,7 +9,9 @@ from typing import Any, ClassVar
 from governance import quantities
 from governance.periods import DateRange
 from ledger.commons import models, queries, writing
-from ledger.commons.writing import Admission, AlreadyKept, NewResource
+from ledger.commons.writing import Admission as Admission
+from ledger.commons.writing import AlreadyKept as AlreadyKept
+from ledger.commons.writing import NewResource as NewResource
 from ledger.foundation import transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
@@ -209,7 +211,7 @@ def suspend(
     writing.check_text(what="a clause id", text=clause, most=80)
     receipt = enter(
         commons_id=commons_id,
-        kind="suspension",
+        kind=queries.SUSPENSION,
         facts={"clause": clause, **_range_facts(during)},
         texts={"reason": reason},
         subject=member,

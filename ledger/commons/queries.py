@@ -14,6 +14,7 @@ from ledger.foundation.errors import LedgerError
 from ledger.journal import queries as journal
 
 ORDER = "outside_order"
+SUSPENSION = "suspension"
 
 
 class UnknownCommons(LedgerError):
@@ -194,15 +195,24 @@ def _known(rows: QuerySet[Row], *, commons_id: int, up_to: int | None) -> QueryS
 
 
 def roster(*, commons_id: int, up_to: int | None = None) -> Roster:
-    """Return the roster as known up to an entry number; everything known if none is given."""
+    """Return the roster as known up to an entry number; everything known if none is given.
+
+    A suspension whose entry was reversed is left out: its row stays, and holds nobody.
+    """
     members_known = models.Member.objects.filter(commons_id=commons_id)
     if up_to is not None:
         members_known = members_known.filter(entry_number__lte=up_to)
+    ordered = journal.rows(commons_id=commons_id, kinds=(SUSPENSION,), up_to=up_to)
+    standing = {entry.number for entry in ordered}
     return columns.roster(
         members=members_known,
         classes=_known(models.MemberClass.objects.all(), commons_id=commons_id, up_to=up_to),
         shares=_known(models.Share.objects.all(), commons_id=commons_id, up_to=up_to),
-        suspensions=_known(models.Suspension.objects.all(), commons_id=commons_id, up_to=up_to),
+        suspensions=[
+            row
+            for row in _known(models.Suspension.objects.all(), commons_id=commons_id, up_to=up_to)
+            if row.entry_number in standing
+        ],
     )
 
 
