@@ -1,6 +1,6 @@
 """The judge at work: findings appended where facts changed, and the close of a season."""
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from datetime import date, timedelta
 from typing import ClassVar
 
@@ -20,13 +20,19 @@ from ledger.journal import queries as journal_queries
 from ledger.journal.leaves import Posting, Receipt
 from ledger.judgement import columns, models, queries
 from ledger.movements import operations as movements
+from ledger.movements import queries as movements_queries
 from ledger.seasons import operations as seasons
 from ledger.seasons import queries as seasons_queries
+from ledger.seasons.queries import SeasonRecord
 
 # A fact of these kinds can touch any member; a fact about one member touches that household.
 TOUCHING_ALL = frozenset(
     {"edition_adopted", "outside_order", "allowable_adopted", "season_opened", "duties_assessed"}
 )
+
+
+# Acts carry a day of their own, which may lie ahead of the judge when they are recorded.
+ACTS = (movements_queries.WITHDRAWAL, movements_queries.WORK, movements_queries.MONEY_INSTEAD)
 
 
 class SeasonNotJudged(LedgerError):
@@ -49,40 +55,38 @@ class SeasonNotOver(LedgerError):
 def judge(*, commons_id: int, as_of: date, hand: Hand) -> int:
     """Judge the open seasons as of a day, append what changed, and return how many findings did.
 
-    Only the members that new entries touch are judged again, unless an entry touches all or a
-    season ended since the last time. The cases hear of the changes through the outbox.
+    Only the members that something new can touch are judged again, unless an entry touches all or
+    a season ended since the last time. What was found in a closed season stays as it is. The
+    judge never goes back to an earlier day than the last. The cases hear of the changes through
+    the outbox.
     """
     cursor, _ = models.Cursor.objects.select_for_update().get_or_create(commons_id=commons_id)
+    as_of = max(as_of, cursor.judged_on or as_of)
     size = journal_queries.head(commons_id=commons_id).size
-    members = _touched(commons_id=commons_id, after=cursor.judged_up_to, up_to=size)
-    known = queries.latest(commons_id=commons_id)
-    changes: list[models.FindingVersion] = []
-    for during in _open_windows(commons_id=commons_id, as_of=as_of):
-        has_ended = during.until <= as_of and not _had_ended(cursor, during)
-        judged_members = None if has_ended else members
-        found = queries.judged(
-            commons_id=commons_id,
-            during=during,
-            as_of=as_of,
-            up_to=size,
-            members=judged_members,
-        )
-        before = _of_window(known, during=during, members=judged_members)
-        changes += _changes(before=before, found=found)
-    _number(changes, commons_id=commons_id, known=known, up_to=size, as_of=as_of)
-    models.FindingVersion.objects.bulk_create(changes)
+    opened = seasons_queries.seasons(commons_id=commons_id)
+    windows = _windows(opened, as_of=as_of)
+    members = _touched(cursor=cursor, windows=windows, up_to=size, as_of=as_of)
+    changes = _changed(
+        commons_id=commons_id,
+        windows=windows,
+        opened=opened,
+        members=members,
+        up_to=size,
+        as_of=as_of,
+    )
     cursor.judged_up_to, cursor.judged_on = size, as_of
     cursor.save()
     if changes:
         outbox.enqueue(
             commons_id=commons_id,
             kind="hear_findings",
-            key=f"{as_of.isoformat()}/{size}",
+            key=f"{changes[0].finding}/{changes[0].version}",
             due_at=hand.clock(),
             payload={"findings": [change.finding for change in changes]},
             clock=hand.clock,
         )
-    _call_again(commons_id=commons_id, as_of=as_of, hand=hand)
+    if windows:
+        _call_again(commons_id=commons_id, as_of=as_of, hand=hand)
     return len(changes)
 
 
@@ -115,6 +119,19 @@ def close_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
 
 
 @transactions.required
+def ring_close(*, commons_id: int, season: str, hand: Hand) -> str:
+    """Close a season on its day, if nobody closed it before; say what was done.
+
+    :raises SeasonNotOver: if a day of the season is left.
+    """
+    journal.hold(commons_id=commons_id)
+    if seasons_queries.season(commons_id=commons_id, code=season).closed:
+        return "no longer due: the season is closed already"
+    receipt = close_season(commons_id=commons_id, season=season, hand=hand)
+    return f"closed by entry {receipt.number}"
+
+
+@transactions.required
 def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
     """Close a season: carry over, note what is owed, return the rest to the pool; all or nothing.
 
@@ -135,58 +152,99 @@ def settle_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
     return seasons.record_close(commons_id=commons_id, season=season, postings=postings, hand=hand)
 
 
-def _open_windows(*, commons_id: int, as_of: date) -> tuple[DateRange, ...]:
-    """Return the windows that have begun and in which some season is not closed."""
-    opened = seasons_queries.seasons(commons_id=commons_id).values()
-    begun = {
-        season.during for season in opened if not season.closed and season.during.first <= as_of
-    }
-    return tuple(sorted(begun))
+def _windows(opened: Mapping[str, SeasonRecord], *, as_of: date) -> tuple[DateRange, ...]:
+    """Return the windows to judge: those of seasons begun and open, and all that overlap one.
+
+    A closed season's duties are still judged beside an open one, for they are of no resource.
+    """
+    begun = {each.during for each in opened.values() if each.during.first <= as_of}
+    is_open = {each.during for each in opened.values() if not each.closed} & begun
+    return tuple(sorted(one for one in begun if any(one.overlaps(other) for other in is_open)))
 
 
-def _had_ended(cursor: models.Cursor, during: DateRange) -> bool:
-    return cursor.judged_on is not None and during.until <= cursor.judged_on
+def _touched(
+    *, cursor: models.Cursor, windows: Sequence[DateRange], up_to: int, as_of: date
+) -> frozenset[int] | None:
+    """Return the members that something new can touch; None is everybody.
 
-
-def _touched(*, commons_id: int, after: int, up_to: int) -> frozenset[int] | None:
-    """Return the members that the entries after a number can touch; None is everybody."""
-    entries = list(journal_queries.entries(commons_id=commons_id, after=after, up_to=up_to))
-    if any(entry.kind in TOUCHING_ALL for entry in entries):
+    New are the entries that the judge has not read, and acts that it read before their day came.
+    """
+    before, judged_on = cursor.judged_up_to, cursor.judged_on
+    if judged_on is None or any(judged_on < each.until <= as_of for each in windows):
         return None
-    subjects = frozenset(entry.subject for entry in entries if entry.subject is not None)
-    return reach.touched(roster=commons.roster(commons_id=commons_id), members=subjects)
+    pairs = journal_queries.kinds_and_subjects(
+        commons_id=cursor.commons_id, after=before, up_to=up_to
+    )
+    if any(kind in TOUCHING_ALL for kind, _ in pairs):
+        return None
+    pairs |= journal_queries.kinds_and_subjects(
+        commons_id=cursor.commons_id,
+        up_to=before,
+        kinds=ACTS,
+        first_day=judged_on + timedelta(days=1),
+        until_day=as_of + timedelta(days=1),
+    )
+    subjects = frozenset(subject for _, subject in pairs if subject is not None)
+    if not subjects:
+        return subjects
+    return reach.touched(
+        roster=commons.roster(commons_id=cursor.commons_id, up_to=up_to), members=subjects
+    )
 
 
-def _of_window(
-    known: Mapping[Key, queries.FindingRecord],
+def _changed(
     *,
-    during: DateRange,
+    commons_id: int,
+    windows: Sequence[DateRange],
+    opened: Mapping[str, SeasonRecord],
     members: frozenset[int] | None,
-) -> dict[Key, queries.FindingRecord]:
-    """Return the standing findings of a season's window about some members."""
-    return {
+    up_to: int,
+    as_of: date,
+) -> list[models.FindingVersion]:
+    """Append the versions of findings that are new, differ or are gone, and return them."""
+    if not windows or members == frozenset():
+        return []
+    known = queries.latest(commons_id=commons_id, during=windows)
+    found: dict[Key, Finding] = {}
+    for window in windows:
+        for each in queries.judged(
+            commons_id=commons_id, during=window, as_of=as_of, up_to=up_to, members=members
+        ):
+            if _is_open(each.key, opened):
+                found.setdefault(each.key, each)
+    # A household is named after its first member, so that one look tells for both kinds.
+    before = {
         key: record
         for key, record in known.items()
-        if record.standing
-        and during.holds(key.window.first)
-        and (members is None or key.subject in members)
+        if record.standing and (members is None or key.subject in members) and _is_open(key, opened)
     }
+    changes = _changes(before=before, found=found)
+    _number(changes, commons_id=commons_id, known=known, up_to=up_to, as_of=as_of)
+    models.FindingVersion.objects.bulk_create(changes)
+    return changes
+
+
+def _is_open(key: Key, opened: Mapping[str, SeasonRecord]) -> bool:
+    """Return whether a finding may still change: what it is about lies in no closed season."""
+    if not key.resource:
+        return True
+    season = seasons_queries.holding(opened=opened, resource=key.resource, day=key.window.first)
+    return season is not None and not season.closed
 
 
 def _changes(
-    *, before: Mapping[Key, queries.FindingRecord], found: Iterable[Finding]
+    *, before: Mapping[Key, queries.FindingRecord], found: Mapping[Key, Finding]
 ) -> list[models.FindingVersion]:
     """Return the new versions: findings that are new or differ, and those that are gone."""
-    now = {finding.key: finding for finding in found}
     changed = [
         models.FindingVersion(standing=True, **columns.fields(finding))
-        for key, finding in sorted(now.items())
+        for key, finding in sorted(found.items())
         if key not in before or before[key].finding.inputs != finding.inputs
     ]
     gone = [
         models.FindingVersion(standing=False, **columns.fields(record.finding))
         for key, record in sorted(before.items())
-        if key not in now
+        if key not in found
     ]
     return changed + gone
 
@@ -200,7 +258,7 @@ def _number(
     as_of: date,
 ) -> None:
     """Give each version its finding's number, its own, and what it was judged on."""
-    last = max((record.number for record in known.values()), default=0)
+    last = queries.last_number(commons_id=commons_id)
     for change in changes:
         before = known.get(columns.finding(change).key)
         if before is None:
@@ -213,9 +271,7 @@ def _number(
 
 
 def _call_again(*, commons_id: int, as_of: date, hand: Hand) -> None:
-    """Promise the next day's judging while a season that has begun is open."""
-    if not _open_windows(commons_id=commons_id, as_of=as_of):
-        return
+    """Promise the next day's judging."""
     tomorrow = as_of + timedelta(days=1)
     zone = commons.commons(commons_id=commons_id).zone
     outbox.enqueue(
@@ -228,7 +284,7 @@ def _call_again(*, commons_id: int, as_of: date, hand: Hand) -> None:
     )
 
 
-def _settling(*, commons_id: int, season: seasons_queries.SeasonRecord) -> Iterable[Posting]:
+def _settling(*, commons_id: int, season: SeasonRecord) -> Iterable[Posting]:
     """Yield the postings that bring every member's account of a season to zero."""
     base = commons.resource(commons_id=commons_id, code=season.resource).base
     book = bylaws.in_force(commons_id=commons_id, day=season.during.last)

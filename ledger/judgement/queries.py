@@ -4,9 +4,11 @@ from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from datetime import date
 
+from django.db.models import Max
+
 from governance import facts
 from governance.compliance import explain, judge
-from governance.compliance.findings import Finding, Key
+from governance.compliance.findings import Finding, Key, SubjectKind
 from governance.periods import DateRange
 from ledger.bylaws import queries as bylaws
 from ledger.commons import queries as commons
@@ -38,13 +40,37 @@ def _record(row: models.FindingVersion) -> FindingRecord:
     )
 
 
-def latest(*, commons_id: int, up_to: int | None = None) -> Mapping[Key, FindingRecord]:
-    """Return the last version of every finding by its key, as known up to an entry number."""
+def latest(
+    *,
+    commons_id: int,
+    up_to: int | None = None,
+    during: Collection[DateRange] | None = None,
+) -> Mapping[Key, FindingRecord]:
+    """Return the last version of every finding by its key, as known up to an entry number.
+
+    :param during: only those whose window begins in one of these ranges.
+    """
     rows = models.FindingVersion.objects.filter(commons_id=commons_id)
     if up_to is not None:
         rows = rows.filter(judged_up_to__lte=up_to)
+    if during is not None:
+        rows = rows.filter(
+            window_first__gte=min((each.first for each in during), default=date.max),
+            window_first__lt=max((each.until for each in during), default=date.max),
+        )
     records = (_record(row) for row in rows.order_by("finding", "version"))
-    return {record.finding.key: record for record in records}
+    return {
+        record.finding.key: record
+        for record in records
+        if during is None or any(each.holds(record.finding.key.window.first) for each in during)
+    }
+
+
+def last_number(*, commons_id: int) -> int:
+    """Return the number of the newest finding; nought before the first."""
+    rows = models.FindingVersion.objects.filter(commons_id=commons_id)
+    found: int | None = rows.aggregate(last=Max("finding"))["last"]
+    return found or 0
 
 
 def by_number(*, commons_id: int, numbers: Collection[int]) -> Mapping[int, FindingRecord]:
@@ -63,6 +89,16 @@ def finding(*, commons_id: int, number: int, version: int | None = None) -> Find
     return _record(row)
 
 
+def numbers_about(*, commons_id: int, members: Collection[int]) -> frozenset[int]:
+    """Return the numbers of the findings about some members or the households named after them."""
+    rows = models.FindingVersion.objects.filter(
+        commons_id=commons_id,
+        subject_kind__in=[kind.value for kind in SubjectKind],
+        subject__in=members,
+    )
+    return frozenset(rows.values_list("finding", flat=True))
+
+
 def judged_up_to(*, commons_id: int) -> int:
     """Return the number of the last entry that the judge has read."""
     cursor = models.Cursor.objects.filter(commons_id=commons_id).first()
@@ -76,22 +112,30 @@ def season_facts(
     up_to: int | None = None,
     members: Collection[int] | None = None,
 ) -> facts.SeasonFacts:
-    """Return what the judge reads of the seasons that share a window.
+    """Return what the judge reads of the seasons that share a window, and of no other season.
 
     As known up to an entry number, and of some members alone where they are given.
     """
-    allotments = {
-        (season.resource, member): amount
+    mine = [
+        season
         for season in seasons.seasons(commons_id=commons_id).values()
         if season.during == during
-        for member, amount in seasons.allotments(commons_id=commons_id, season=season.code).items()
+    ]
+    resources = {season.resource for season in mine}
+    allotments = {
+        (season.resource, member): amount
+        for season in mine
+        for member, amount in seasons.allotments(
+            commons_id=commons_id, season=season.code, up_to=up_to
+        ).items()
     }
+    withdrawals = movements.withdrawals(
+        commons_id=commons_id, during=during, up_to=up_to, members=members
+    )
     return facts.SeasonFacts(
         season=during,
         roster=commons.roster(commons_id=commons_id, up_to=up_to),
-        withdrawals=movements.withdrawals(
-            commons_id=commons_id, during=during, up_to=up_to, members=members
-        ),
+        withdrawals=tuple(each for each in withdrawals if each.resource in resources),
         work=movements.work(commons_id=commons_id, during=during, up_to=up_to, members=members),
         money=movements.money_instead(
             commons_id=commons_id, during=during, up_to=up_to, members=members
