@@ -15,7 +15,7 @@ class Edition(AppendOnlyModel):
     in_force_from = models.DateField()
     entry_number = models.BigIntegerField()
 
-    class Meta:
+    class Meta(AppendOnlyModel.Meta):
         constraints = [
             models.UniqueConstraint(fields=["commons_id", "number"], name="edition_number_once"),
             models.UniqueConstraint(

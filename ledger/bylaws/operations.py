@@ -9,6 +9,7 @@ from ledger.commons import queries as commons_queries
 from ledger.foundation import transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
+from ledger.journal import operations as journal
 from ledger.journal.leaves import Receipt
 
 
@@ -17,7 +18,8 @@ class EditionOutOfOrder(LedgerError):
 
     code: ClassVar[str] = "bylaws.edition_out_of_order"
     message: ClassVar[str] = (
-        "Edition {found} from {found_from} does not follow edition {last} from {last_from}."
+        "Found edition {found} from {found_from}; accepted are a number above {last} and a first"
+        " day after {last_from}."
     )
 
 
@@ -25,7 +27,9 @@ class BookOfAnotherCommons(LedgerError):
     """An edition measures things otherwise than the commons does."""
 
     code: ClassVar[str] = "bylaws.book_of_another_commons"
-    message: ClassVar[str] = "The book says {what} {found!r}; the commons keeps {accepted!r}."
+    message: ClassVar[str] = (
+        "Found {what} {found!r}; accepted is what the commons keeps: {accepted!r}."
+    )
 
 
 @transactions.required
@@ -35,7 +39,9 @@ def adopt(*, commons_id: int, text: str, name: str, hand: Hand) -> Receipt:
     :raises governance.bylaws.documents.UnreadableBook: if the text is not a book.
     :raises EditionOutOfOrder: if it does not follow the editions adopted before.
     :raises BookOfAnotherCommons: if its zone, money or units are not the commons'.
+    :raises ledger.commons.queries.UnknownResource: if it speaks of a resource not kept.
     """
+    journal.hold(commons_id=commons_id)
     book = documents.read(text=text, name=name)
     _check_order(commons_id, book)
     _check_measures(commons_id, book)

@@ -15,9 +15,12 @@ class Season(AppendOnlyModel):
     until_day = models.DateField()
     entry_number = models.BigIntegerField()
 
-    class Meta:
+    class Meta(AppendOnlyModel.Meta):
         constraints = [
             models.UniqueConstraint(fields=["commons_id", "code"], name="season_code_once"),
+            models.CheckConstraint(
+                condition=models.Q(until_day__gt=models.F("first_day")), name="season_holds_a_day"
+            ),
         ]
 
 
@@ -30,7 +33,7 @@ class Allowable(AppendOnlyModel):
     reserve = models.BigIntegerField()
     entry_number = models.BigIntegerField()
 
-    class Meta:
+    class Meta(AppendOnlyModel.Meta):
         constraints = [
             models.UniqueConstraint(fields=["commons_id", "season"], name="allowable_once"),
             models.CheckConstraint(
@@ -46,7 +49,7 @@ class Close(AppendOnlyModel):
     season = models.SlugField(max_length=60)
     entry_number = models.BigIntegerField()
 
-    class Meta:
+    class Meta(AppendOnlyModel.Meta):
         constraints = [
             models.UniqueConstraint(fields=["commons_id", "season"], name="season_closed_once"),
         ]

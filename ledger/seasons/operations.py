@@ -14,22 +14,37 @@ from ledger.commons import queries as commons_queries
 from ledger.foundation import outbox, transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
+from ledger.journal import operations as journal
 from ledger.journal.leaves import Posting, Receipt
 from ledger.seasons import models, queries
 
 
 class SeasonsOverlap(LedgerError):
-    """A season shares days, or its name, with another of the same resource."""
+    """A season shares days with another of the same resource."""
 
     code: ClassVar[str] = "seasons.overlap"
-    message: ClassVar[str] = "The season {found} overlaps {other}, which runs {first} to {last}."
+    message: ClassVar[str] = (
+        "Found the season {found} on days of {other}; accepted are days before {first} or after"
+        " {last}."
+    )
+
+
+class ClosesTooEarly(LedgerError):
+    """A season is to close while it still runs."""
+
+    code: ClassVar[str] = "seasons.closes_too_early"
+    message: ClassVar[str] = (
+        "Found {found} as the day on which {season} closes; accepted are {first} and later."
+    )
 
 
 class AllowableAlreadyAdopted(LedgerError):
     """The season has its allowable."""
 
     code: ClassVar[str] = "seasons.allowable_already_adopted"
-    message: ClassVar[str] = "The season {season} has an allowable already, by entry {entry}."
+    message: ClassVar[str] = (
+        "Found another allowable for {season}; accepted is the one adopted by entry {entry}."
+    )
 
 
 class TooFewApprovals(LedgerError):
@@ -37,8 +52,8 @@ class TooFewApprovals(LedgerError):
 
     code: ClassVar[str] = "seasons.too_few_approvals"
     message: ClassVar[str] = (
-        "Clause {clause} asks for {needed} approvals by the {body}; found {found} from members"
-        " {members} who hold that office."
+        "Found {found} approvals by members who hold the office of the {body} today: {members};"
+        " accepted are {needed} or more, by clause {clause}."
     )
 
 
@@ -46,7 +61,7 @@ class SeasonAlreadyClosed(LedgerError):
     """The season was closed before."""
 
     code: ClassVar[str] = "seasons.already_closed"
-    message: ClassVar[str] = "The season {season} is closed already."
+    message: ClassVar[str] = "Found the season {season} closed; accepted is one that is open."
 
 
 @transactions.required
@@ -58,16 +73,20 @@ def open_season(
     The judge comes on its first day, the close on ``closes_on``, and the advice on the day that
     the quota clause in force on the season's first day names.
 
-    :raises SeasonsOverlap: if it shares days or its code with another season of the resource.
+    :raises ledger.commons.operations.UnusableCode: if the code holds other signs than a code may.
+    :raises ledger.commons.operations.AlreadyKept: if a season has this code.
+    :raises ledger.commons.queries.UnknownResource: if the resource is not kept.
+    :raises SeasonsOverlap: if it shares days with another season of the resource.
+    :raises ClosesTooEarly: if ``closes_on`` is not after its last day.
+    :raises ledger.bylaws.queries.NoSuchClause: if no clause sets the resource's allowable.
     """
-    opened = queries.seasons(commons_id=commons_id)
-    for other in opened.values():
-        clash = other.resource == resource and other.during.overlaps(during)
-        if clash or other.code == code:
-            raise SeasonsOverlap(
-                found=code, other=other.code, first=other.during.first, last=other.during.last
-            )
+    journal.hold(commons_id=commons_id)
+    commons.check_code(what="season", code=code, most=60)
     commons_queries.resource(commons_id=commons_id, code=resource)
+    _check_days(commons_id, code, resource, during)
+    if closes_on < during.until:
+        raise ClosesTooEarly(found=closes_on, season=code, first=during.until)
+    quota = bylaws.quota(commons_id=commons_id, resource=resource, day=during.first)
     receipt = commons.enter(
         commons_id=commons_id,
         kind="season_opened",
@@ -87,8 +106,8 @@ def open_season(
         until_day=during.until,
         entry_number=receipt.number,
     )
-    season = queries.season(commons_id=commons_id, code=code)
-    _schedule(commons_id=commons_id, season=season, closes_on=closes_on, hand=hand)
+    advised_on = during.first - timedelta(days=quota.review_days)
+    _schedule(commons_id, code, during, closes_on=closes_on, advised_on=advised_on, hand=hand)
     return receipt
 
 
@@ -99,17 +118,25 @@ def adopt_allowable(
     """Issue a season's allowable and split it into allotments, with what was carried or is owed.
 
     :param amount: base units of the resource.
-    :param approved_by: the members who confirmed it.
+    :param approved_by: the members who confirmed it; who does not hold the office is not counted.
+    :raises ledger.seasons.queries.UnknownSeason: if the season was not opened.
     :raises AllowableAlreadyAdopted: if the season has one.
-    :raises TooFewApprovals: if fewer hold the confirming office than the book asks for.
+    :raises SeasonAlreadyClosed: if it was closed without one.
+    :raises TooFewApprovals: if fewer hold the confirming office today than the book asks for.
+    :raises ledger.bylaws.queries.NoSuchClause: if the book does not say how to split it.
+    :raises governance.allocation.apportionment.NegativeTotal: if the amount lies below 0.
+    :raises governance.allocation.apportionment.NobodyToHold: if nobody has a share.
     """
+    journal.hold(commons_id=commons_id)
     opened = queries.season(commons_id=commons_id, code=season)
     before = queries.allowable(commons_id=commons_id, season=season)
     if before is not None:
         raise AllowableAlreadyAdopted(season=season, entry=before.entry)
+    if opened.closed:
+        raise SeasonAlreadyClosed(season=season)
     first = opened.during.first
     quota = bylaws.quota(commons_id=commons_id, resource=opened.resource, day=first)
-    _check_approvals(commons_id, quota, approved_by, hand)
+    approvals = _approvals(commons_id, quota, approved_by, hand)
     allocation = bylaws.allocation(commons_id=commons_id, resource=opened.resource, day=first)
     split = splitting.split_allowable(
         clause=allocation,
@@ -137,7 +164,7 @@ def adopt_allowable(
             "allocation_clause": allocation.head.id,
             "amount": amount,
             "reserve": split.reserve,
-            "approved_by": sorted(approved_by),
+            "approved_by": approvals,
         },
         postings=tuple(
             Posting(account=account, resource=opened.resource, unit=base, amount=part)
@@ -162,8 +189,10 @@ def record_close(
 ) -> Receipt:
     """Append the one close of a season with the postings that settle it.
 
+    :raises ledger.seasons.queries.UnknownSeason: if the season was not opened.
     :raises SeasonAlreadyClosed: if it was closed before.
     """
+    journal.hold(commons_id=commons_id)
     if queries.season(commons_id=commons_id, code=season).closed:
         raise SeasonAlreadyClosed(season=season)
     receipt = commons.enter(
@@ -177,19 +206,34 @@ def record_close(
     return receipt
 
 
+def _check_days(commons_id: int, code: str, resource: str, during: DateRange) -> None:
+    opened = queries.seasons(commons_id=commons_id)
+    if code in opened:
+        raise commons.AlreadyKept(what="season's code", found=f"the season {code}")
+    for other in opened.values():
+        if other.resource == resource and other.during.overlaps(during):
+            raise SeasonsOverlap(
+                found=code, other=other.code, first=other.during.first, last=other.during.last
+            )
+
+
 def _schedule(
-    *, commons_id: int, season: queries.SeasonRecord, closes_on: date, hand: Hand
+    commons_id: int,
+    code: str,
+    during: DateRange,
+    *,
+    closes_on: date,
+    advised_on: date,
+    hand: Hand,
 ) -> None:
-    during = season.during
     zone = commons_queries.commons(commons_id=commons_id).zone
-    quota = bylaws.quota(commons_id=commons_id, resource=season.resource, day=during.first)
     window = {"first": during.first.isoformat(), "until": during.until.isoformat()}
-    code = {"season": season.code}
+    season = {"season": code}
     promised: tuple[tuple[str, str, date, Mapping[str, str]], ...] = (
         ("assess_duties", window["first"], during.first, window),
         ("judge", window["first"], during.first + timedelta(days=1), {}),
-        ("close_season", season.code, closes_on, code),
-        ("advise", season.code, during.first - timedelta(days=quota.review_days), code),
+        ("close_season", code, closes_on, season),
+        ("advise", code, advised_on, season),
     )
     for kind, key, day, payload in promised:
         outbox.enqueue(
@@ -202,20 +246,22 @@ def _schedule(
         )
 
 
-def _check_approvals(
+def _approvals(
     commons_id: int, quota: clauses.PoolTotal, approved_by: Collection[int], hand: Hand
-) -> None:
+) -> list[int]:
+    """Return those of the members who hold the confirming office today."""
     today = commons_queries.commons(commons_id=commons_id).day_of(hand.clock())
     office = commons_queries.holders_of(commons_id=commons_id, role=quota.confirm_by, day=today)
-    valid = office & set(approved_by)
+    valid = sorted(office & set(approved_by))
     if len(valid) < quota.approvals:
         raise TooFewApprovals(
             clause=quota.head.id,
             needed=quota.approvals,
             body=quota.confirm_by,
             found=len(valid),
-            members=sorted(valid),
+            members=", ".join(map(str, valid)) or "none",
         )
+    return valid
 
 
 def _carried(commons_id: int, season: queries.SeasonRecord) -> Iterator[tuple[str, int]]:

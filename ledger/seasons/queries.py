@@ -49,6 +49,19 @@ def pool_account(*, season: str) -> str:
     return f"pool:{season}"
 
 
+def off_season(*, resource: str) -> str:
+    """Name the place beside the seasons of a resource, for takes on a day that none holds.
+
+    The point keeps it apart from every season: no code has one.
+    """
+    return f"{resource}.off-season"
+
+
+def after_close(*, season: str) -> str:
+    """Name the place beside a closed season, for takes that came in after its close."""
+    return f"{season}.after-close"
+
+
 def left_account(*, season: str, member: int) -> str:
     """Name the account of what a member may still take; below zero when overdrawn."""
     return f"left:{season}:{member}"
@@ -91,10 +104,7 @@ def season(*, commons_id: int, code: str) -> SeasonRecord:
 
     :raises UnknownSeason: if the commons has not opened it.
     """
-    opened = seasons(commons_id=commons_id)
-    if code not in opened:
-        raise UnknownSeason(found=code, accepted=", ".join(opened) or "none yet")
-    return opened[code]
+    return _opened(commons_id, code)
 
 
 def holding(*, opened: Mapping[str, SeasonRecord], resource: str, day: date) -> SeasonRecord | None:
@@ -158,8 +168,11 @@ def carried(*, commons_id: int, resource: str) -> Mapping[int, int]:
 
 
 def pool(*, commons_id: int, season: str) -> int:
-    """Return what lies in the pool of a season, in base units."""
-    opened = seasons(commons_id=commons_id)[season]
+    """Return what lies in the pool of a season, in base units.
+
+    :raises UnknownSeason: if the commons has not opened it.
+    """
+    opened = _opened(commons_id, season)
     resource = commons.resource(commons_id=commons_id, code=opened.resource)
     return journal.balance(
         commons_id=commons_id,
@@ -172,3 +185,10 @@ def pool(*, commons_id: int, season: str) -> int:
 def _by_member(*, commons_id: int, prefix: str, up_to: int | None) -> Mapping[int, int]:
     found = journal.balances(commons_id=commons_id, prefix=prefix, up_to=up_to)
     return {int(account.rsplit(":", 1)[1]): amount for (account, _, _), amount in found.items()}
+
+
+def _opened(commons_id: int, code: str) -> SeasonRecord:
+    opened = seasons(commons_id=commons_id)
+    if code not in opened:
+        raise UnknownSeason(found=code, accepted=", ".join(opened) or "none yet")
+    return opened[code]
