@@ -19,6 +19,7 @@ from typing import Any
 import hypothesis
 import pytest
 from django.db import connections
+from django.test.utils import setup_databases, teardown_databases
 
 from ledger.foundation.clocks import Chance, seeded_chance
 from tests import databases
@@ -97,6 +98,21 @@ def django_db_modify_db_settings(tmp_path_factory: pytest.TempPathFactory) -> No
         # A file: in memory, SQLite would heed neither the pragmas nor the kind of transaction.
         path = str(tmp_path_factory.mktemp("database") / "stintbook.sqlite3")
         databases.point_django(f"sqlite:///{path}", test_name=path)
+
+
+@pytest.fixture(scope="session")
+def django_db_setup(
+    django_test_environment: None, django_db_blocker: Any, django_db_modify_db_settings: None
+) -> Iterator[None]:
+    """Make the run's database, also where only tests ask for it that copy it.
+
+    Left to itself, pytest-django makes one only for tests marked as its own.
+    """
+    with django_db_blocker.unblock():
+        made = setup_databases(verbosity=0, interactive=False)
+    yield
+    with django_db_blocker.unblock():
+        teardown_databases(made, verbosity=0)
 
 
 @pytest.fixture
