@@ -76,6 +76,16 @@ def due(*, at: datetime, commons_id: int | None = None, limit: int) -> list[DueJ
 
 
 @transactions.required
+def claim(*, job_id: int) -> None:
+    """Keep an open job from every other worker until the transaction ends.
+
+    :raises JobNotOpen: if another worker has done it meanwhile.
+    """
+    if Job.objects.select_for_update().filter(pk=job_id, done_at__isnull=True).first() is None:
+        raise JobNotOpen(job_id=job_id)
+
+
+@transactions.required
 def mark_done(*, job_id: int, outcome: str, at: datetime) -> None:
     """Close a job, in the transaction that holds its effect, so that the effect happens once.
 

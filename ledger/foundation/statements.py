@@ -9,7 +9,7 @@ from typing import Any, Protocol
 import psycopg
 from django.db import connection
 
-ROWS_A_STATEMENT = 500
+ROWS_A_STATEMENT = 100
 # PostgreSQL takes 65,535 values in one statement, SQLite 32,766.
 _VALUES_A_STATEMENT = 30_000
 _TEXTS_KEPT = 256
@@ -70,7 +70,7 @@ def insertions(
     rows: Sequence[Sequence[Any]],
     conflict: str = "",
 ) -> Iterator[Statement]:
-    """Yield the statements that insert rows, hundreds of rows in each.
+    """Yield the statements that insert rows, a hundred rows in each.
 
     :param conflict: an ``ON CONFLICT`` clause, the same in both databases.
     """

@@ -7,6 +7,8 @@ from dataclasses import dataclass
 from datetime import date, datetime
 from typing import Any
 
+from django.db.models import Q
+
 from ledger.journal import leaves, models, tree
 
 TILE_LEVELS = 8
@@ -227,11 +229,11 @@ def _tile(commons_id: int, size: int, level: int, place: int) -> tuple[bytes, ..
 
 def _sealed(commons_id: int, entries: Iterable[models.Entry]) -> tuple[SealedEntry, ...]:
     entries = tuple(entries)
-    numbers = [entry.number for entry in entries]
+    numbered = _numbered([entry.number for entry in entries])
     postings: defaultdict[int, list[leaves.Posting]] = defaultdict(list)
     days: defaultdict[int, set[date]] = defaultdict(set)
     for number, account, resource, unit, amount, day in (
-        models.Posting.objects.filter(commons_id=commons_id, number__in=numbers)
+        models.Posting.objects.filter(numbered, commons_id=commons_id)
         .order_by("number", "line")
         .values_list("number", "account", "resource", "unit", "amount", "day")
     ):
@@ -241,7 +243,7 @@ def _sealed(commons_id: int, entries: Iterable[models.Entry]) -> tuple[SealedEnt
         )
     texts: defaultdict[int, dict[str, SealedText]] = defaultdict(dict)
     for number, name, text, salt in (
-        models.Text.objects.filter(commons_id=commons_id, number__in=numbers)
+        models.Text.objects.filter(numbered, commons_id=commons_id)
         .order_by("number", "name")
         .values_list("number", "name", "text", "salt")
     ):
@@ -268,3 +270,10 @@ def _sealed(commons_id: int, entries: Iterable[models.Entry]) -> tuple[SealedEnt
         )
         for entry in entries
     )
+
+
+def _numbered(numbers: list[int]) -> Q:
+    """Return the condition on these numbers: as a range where they have no gap, which is faster."""
+    if not numbers or max(numbers) - min(numbers) >= len(numbers):
+        return Q(number__in=numbers)
+    return Q(number__gte=min(numbers), number__lte=max(numbers))

@@ -28,7 +28,12 @@ NAME_LENGTH, KEY_LENGTH = 64, 255
 
 _NUMBER_LIKE = re.compile(r"'*-?[0-9]+")
 _encode = json.JSONEncoder(
-    ensure_ascii=False, sort_keys=True, separators=(",", ":"), allow_nan=False
+    # Facts may be any mapping; the encoder knows dictionaries.
+    ensure_ascii=False,
+    sort_keys=True,
+    separators=(",", ":"),
+    allow_nan=False,
+    default=dict,
 ).encode
 
 
@@ -163,7 +168,7 @@ def canonical(value: Any) -> bytes:
 
 def facts_text(facts: Mapping[str, Fact]) -> str:
     """Return facts as the text that their column holds: sorted JSON, whole numbers as numbers."""
-    return _encode(_as_stored(facts))
+    return _encode(facts)
 
 
 def commitment(*, salt: bytes, text: str) -> str:
@@ -235,31 +240,21 @@ def _in_leaf(fact: Fact) -> Any:
         return str(fact)
     if isinstance(fact, str):
         return f"'{fact}" if _NUMBER_LIKE.fullmatch(fact) else fact
-    if isinstance(fact, Mapping):
+    if isinstance(fact, dict | Mapping):
         return {name: _in_leaf(inner) for name, inner in fact.items()}
     return [_in_leaf(inner) for inner in fact]
 
 
-def _as_stored(fact: Fact) -> Any:
-    if isinstance(fact, Mapping):
-        return {name: _as_stored(inner) for name, inner in fact.items()}
-    if isinstance(fact, Sequence) and not isinstance(fact, str):
-        return [_as_stored(inner) for inner in fact]
-    return fact
-
-
 def _check_fact(name: str, fact: object) -> None:
-    if fact is None or isinstance(fact, bool):
-        return
     if isinstance(fact, str):
         _check_text(name, fact)
+    elif fact is None or isinstance(fact, bool):
+        return
     elif isinstance(fact, int):
         if not AMOUNT_MIN <= fact <= AMOUNT_MAX:
             raise MalformedDraft(field=name, why="the number is longer than 64 bits")
-    elif isinstance(fact, Mapping):
+    elif isinstance(fact, dict | Mapping):
         for key, inner in fact.items():
-            if not isinstance(key, str):
-                raise MalformedDraft(field=name, why=f"the name {key!r} is not a text")
             _check_text(name, key)
             _check_fact(f"{name}.{key}", inner)
     elif isinstance(fact, list | tuple):
@@ -270,12 +265,12 @@ def _check_fact(name: str, fact: object) -> None:
 
 
 def _check_word(name: str, word: str, *, longest: int) -> None:
+    _check_text(name, word)
     if not word or len(word) > longest:
         raise MalformedDraft(field=name, why=f"it has {len(word)} signs; 1 to {longest} fit")
-    _check_text(name, word)
 
 
-def _check_text(name: str, text: str) -> None:
+def _check_text(name: str, text: object) -> None:
     if not isinstance(text, str):
         raise MalformedDraft(field=name, why=f"{text!r} is not a text")
     # No database text holds NUL, and half of a surrogate pair has no UTF-8.

@@ -1,13 +1,13 @@
 """The statements that append: few, in plain SQL, the same on both databases."""
 
-import json
 from collections import defaultdict
 from collections.abc import Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from datetime import UTC, date, datetime
+from datetime import UTC, datetime
 from typing import Any
 
 from django.db import connection
+from django.db.backends.base.operations import BaseDatabaseOperations
 
 from ledger.foundation import statements
 from ledger.foundation.clocks import Chance
@@ -114,12 +114,13 @@ def write(
         recorded_at=recorded_at,
         broken=head.broken,
     )
+    at = connection.ops.adapt_datetimefield_value(recorded_at)
     update = Statement(
         sql="UPDATE journal_head SET size = %s, root = %s, edge = %s, recorded_at = %s"
         " WHERE commons_id = %s",
-        values=[grown.size, grown.root, b"".join(edge), _instant(recorded_at), head.commons_id],
+        values=[grown.size, grown.root, b"".join(edge), at, head.commons_id],
     )
-    insertions = _insertions(head.commons_id, sealed, by, recorded_at)
+    insertions = _insertions(head.commons_id, sealed, by, at)
     statements.run_together(statements=[*insertions, update])
     _write_tiles(head, hashes)
     return grown
@@ -138,18 +139,19 @@ def _standing(commons_id: int, device: str, keys: Sequence[str]) -> dict[tuple[s
 
 
 def _insertions(
-    commons_id: int, sealed: Sequence[SealedDraft], by: int, recorded_at: datetime
+    commons_id: int, sealed: Sequence[SealedDraft], by: int, recorded_at: Any
 ) -> Iterator[Statement]:
-    at = _instant(recorded_at)
+    # Looked up once: the way to a connection's parts is long.
+    ops = connection.ops
     yield from statements.insertions(
         table="journal_entry",
         columns=_ENTRY_COLUMNS,
-        rows=[_entry_row(commons_id, one, by, at) for one in sealed],
+        rows=[_entry_row(ops, commons_id, one, by, recorded_at) for one in sealed],
     )
     yield from statements.insertions(
         table="journal_posting",
         columns=_POSTING_COLUMNS,
-        rows=[row for one in sealed for row in _posting_rows(commons_id, one)],
+        rows=[row for one in sealed for row in _posting_rows(ops, commons_id, one)],
     )
     sums = fold([one.draft for one in sealed])
     yield from statements.insertions(
@@ -170,8 +172,10 @@ def _insertions(
     )
 
 
-def _posting_rows(commons_id: int, one: SealedDraft) -> Iterator[tuple[Any, ...]]:
-    day = _day(one.draft.day)
+def _posting_rows(
+    ops: BaseDatabaseOperations, commons_id: int, one: SealedDraft
+) -> Iterator[tuple[Any, ...]]:
+    day = ops.adapt_datefield_value(one.draft.day)
     for line, posting in enumerate(one.draft.postings):
         yield (
             *(commons_id, one.number, line, posting.account, posting.resource, posting.unit),
@@ -179,22 +183,24 @@ def _posting_rows(commons_id: int, one: SealedDraft) -> Iterator[tuple[Any, ...]
         )
 
 
-def _entry_row(commons_id: int, one: SealedDraft, by: int, recorded_at: Any) -> tuple[Any, ...]:
+def _entry_row(
+    ops: BaseDatabaseOperations, commons_id: int, one: SealedDraft, by: int, recorded_at: Any
+) -> tuple[Any, ...]:
     draft = one.draft
     return (
         commons_id,
         one.number,
         draft.kind,
-        _instant(draft.occurred_at),
+        ops.adapt_datetimefield_value(draft.occurred_at),
         recorded_at,
-        _day(draft.day),
+        ops.adapt_datefield_value(draft.day),
         by,
         draft.device,
         draft.key or "",
         draft.reverses,
         draft.subject,
         leaves.facts_text(draft.facts),
-        json.dumps(one.commitments, sort_keys=True),
+        leaves.canonical(one.commitments).decode(),
         one.salt,
         one.leaf_hash,
     )
@@ -292,11 +298,3 @@ def _parts(keys: Sequence[str]) -> list[Sequence[str]]:
 
 def _for_update() -> str:
     return connection.ops.for_update_sql() if connection.features.has_select_for_update else ""
-
-
-def _instant(at: datetime) -> Any:
-    return connection.ops.adapt_datetimefield_value(at)
-
-
-def _day(day: date) -> Any:
-    return connection.ops.adapt_datefield_value(day)

@@ -2,8 +2,10 @@
 
 import json
 import struct
+from collections.abc import Mapping
 from datetime import UTC, date, datetime, timedelta, timezone
 from hashlib import sha256
+from types import MappingProxyType
 from typing import Any
 
 import pytest
@@ -120,6 +122,12 @@ def test_facts_come_back_as_they_went_in(facts: dict[str, Any]) -> None:
     assert json.loads(leaves.facts_text(facts)) == facts
 
 
+def test_any_mapping_will_do() -> None:
+    inner: Mapping[str, Any] = MappingProxyType({"b": (1, 2), "a": MappingProxyType({})})
+    assert leaves.facts_text(inner) == '{"a":{},"b":[1,2]}'
+    assert _leaf(draft(facts=inner)) == _leaf(draft(facts={"a": {}, "b": [1, 2]}))
+
+
 def test_every_column_stands_in_the_leaf() -> None:
     given = draft(
         facts={"count": 2**53, "code": "17", "yes": True, "none": None, "list": [1, "a"]},
@@ -170,6 +178,7 @@ def test_a_commitment_is_the_digest_of_salt_and_text() -> None:
         ({"occurred_at": datetime(2026, 3, 1, 9)}, "occurred_at"),  # noqa: DTZ001
         ({"day": datetime(2026, 3, 1, tzinfo=UTC)}, "day"),
         ({"kind": ""}, "kind"),
+        ({"kind": 5}, "kind"),
         ({"kind": "k" * 65}, "kind"),
         ({"key": ""}, "key"),
         ({"key": "k" * 256}, "key"),
