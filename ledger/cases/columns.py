@@ -1,5 +1,6 @@
 """Case events between the rows that keep them and the records of the procedure."""
 
+from collections.abc import Mapping
 from datetime import date
 from typing import Any
 
@@ -7,15 +8,18 @@ from governance.sanctions.moves import Move, Role
 from governance.sanctions.record import Actor, Delivery, Event
 from ledger.cases import models
 
+# The name of a move's reason among the texts of its entry.
+REASON = "reason"
 
-def event(row: models.Event) -> Event:
-    """Return the event that a row keeps."""
+
+def event(row: models.Event, texts: Mapping[str, str]) -> Event:
+    """Return the event that a row keeps; its reason stands among the texts of its entry."""
     details = row.details
     return Event(
         move=Move(row.move),
         actor=Actor(role=Role(row.role), member=row.member),
         on=row.on,
-        reason=row.reason,
+        reason=texts.get(REASON, ""),
         subjects=frozenset(details["subjects"]),
         concerns_board=details["concerns_board"],
         monitors=frozenset(details["monitors"]),

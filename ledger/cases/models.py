@@ -6,7 +6,7 @@ from ledger.foundation.appendonly import AppendOnlyModel
 
 
 class Case(AppendOnlyModel):
-    """The procedure on one finding under one ladder."""
+    """The procedure on one finding under one ladder; a finding that stands anew gets another."""
 
     commons_id = models.BigIntegerField()
     number = models.PositiveIntegerField()
@@ -16,12 +16,15 @@ class Case(AppendOnlyModel):
     class Meta:
         constraints = [
             models.UniqueConstraint(fields=["commons_id", "number"], name="case_number_once"),
-            models.UniqueConstraint(fields=["commons_id", "finding"], name="case_of_finding_once"),
         ]
+        indexes = [models.Index(fields=["commons_id", "finding"], name="case_finding")]
 
 
 class Event(AppendOnlyModel):
-    """One move of a case, with the finding's version that it rests on and its entry."""
+    """One move of a case, with the finding's version that it rests on and its entry.
+
+    The reason stands among the texts of the entry, from which it can be erased.
+    """
 
     commons_id = models.BigIntegerField()
     case = models.PositiveIntegerField()
@@ -30,7 +33,6 @@ class Event(AppendOnlyModel):
     role = models.CharField(max_length=12)
     member = models.PositiveIntegerField(null=True)
     on = models.DateField()
-    reason = models.TextField()
     details = models.JSONField()
     effects = models.JSONField()
     finding_version = models.PositiveIntegerField()

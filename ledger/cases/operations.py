@@ -1,33 +1,30 @@
 """The writers of cases: the book notes, people move, and a final decision is carried out."""
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from datetime import date, timedelta
-from typing import ClassVar, assert_never
+from datetime import date
+from typing import ClassVar
 
 from governance import periods
 from governance.bylaws import clauses
-from governance.periods import DateRange
 from governance.sanctions import clocks, ladder, moves, procedure
 from governance.sanctions.moves import Move, Role, State
 from governance.sanctions.record import Actor, CaseSoFar, Delivery, Event
 from ledger.bylaws import queries as bylaws
-from ledger.cases import columns, models, queries
-from ledger.commons import operations as commons
+from ledger.cases import models, queries, writing
 from ledger.commons import queries as commons_queries
 from ledger.fieldwork import queries as fieldwork
 from ledger.foundation import outbox, transactions
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
 from ledger.journal import operations as journal
-from ledger.journal.leaves import Fact
 from ledger.judgement import queries as judgement
-from ledger.movements import operations as movements
-from ledger.movements import queries as movements_queries
-from ledger.seasons import queries as seasons
 
 # Roles that a member holds by an office on record.
 OFFICES = frozenset({Role.SECRETARY, Role.MONITOR, Role.BOARD, Role.AUDITOR})
+# Moves that need the very finding that was told of, and moves that need one at all.
+SETTLING = frozenset({Move.DECIDE, Move.UPHOLD, Move.LET_STAND})
+CARRYING_ON = SETTLING | {Move.TELL}
 THE_COMPUTER = Actor(role=Role.BOOK, member=None)
 
 
@@ -45,6 +42,23 @@ class FindingWithdrawn(LedgerError):
     message: ClassVar[str] = (
         "{move} is refused: finding {finding} was withdrawn; accepted is to set the case aside."
     )
+
+
+class FindingChanged(LedgerError):
+    """A case would be decided on another finding than the member was told of."""
+
+    code: ClassVar[str] = "cases.finding_changed"
+    message: ClassVar[str] = (
+        "{move} is refused: finding {finding} has changed since the notice; accepted are moves"
+        " from checking, to which the case goes back."
+    )
+
+
+class NotByHand(LedgerError):
+    """Somebody would make the move that only a finding's change makes."""
+
+    code: ClassVar[str] = "cases.not_by_hand"
+    message: ClassVar[str] = "{move} is refused: it follows when a finding changes, never by hand."
 
 
 class NoProcedure(LedgerError):
@@ -94,17 +108,12 @@ class Act:
 def hear(*, commons_id: int, findings: Sequence[int], hand: Hand) -> int:
     """Note a case on each new finding that a ladder follows, and send changed ones back.
 
-    An unchanged finding appends nothing. Return how many cases were noted or sent back.
+    An unchanged finding appends nothing. A case that was set aside for want of a finding is not
+    taken up again; where the finding stands anew, another case is noted. Return how many cases
+    were noted or sent back.
     """
-    moved = 0
-    for number in findings:
-        finding = judgement.finding(commons_id=commons_id, number=number)
-        case = queries.number_on_finding(commons_id=commons_id, finding=number)
-        if case is None:
-            moved += _note(commons_id, finding, hand)
-        else:
-            moved += _send_back(commons_id, queries.case(commons_id=commons_id, number=case), hand)
-    return moved
+    journal.hold(commons_id=commons_id)
+    return sum(_heard(commons_id, number, hand) for number in findings)
 
 
 @transactions.required
@@ -116,60 +125,79 @@ def move(*, commons_id: int, case: int, act: Act, hand: Hand) -> CaseSoFar:
 
     :raises governance.sanctions.procedure.MoveRefused: if the procedure does not accept it.
     :raises RoleNotHeld: if the one who acts does not hold the office.
+    :raises NotByHand: if the move follows from a finding's change alone.
     :raises FindingWithdrawn: if the finding no longer stands and the move carries the case on.
+    :raises FindingChanged: if the finding is another than the member was told of.
+    :raises NoProcedure: if the edition in force does not say how cases are dealt with.
     :raises ledger.cases.queries.UnknownCase: if there is no such case.
     """
-    before = queries.case(commons_id=commons_id, number=case)
-    today = _today(commons_id, hand)
-    actor = Actor(role=Role(act.role), member=act.member)
-    _check_office(commons_id, actor, today)
-    if act.move in (Move.TELL, Move.DECIDE) and not before.finding.standing:
-        raise FindingWithdrawn(move=act.move, finding=before.finding.number)
-    event = Event(
-        move=Move(act.move),
-        actor=actor,
-        on=today,
-        reason=act.reason,
-        concerns_board=_concerns_board(commons_id, before.so_far.subjects, today),
-        monitors=_watching(commons_id, before.finding),
-        officer=act.officer,
-        delivery=None if act.handed is None else _delivery(act.handed),
-    )
-    if event.move in (Move.TELL, Move.DECIDE):
-        event = _with_step(commons_id, before, event)
-    return _advance(commons_id, before, event, hand)
+    if act.move == Move.RETURN_TO_CHECKING:
+        raise NotByHand(move=act.move)
+    journal.hold(commons_id=commons_id)
+    return _moved(queries.case(commons_id=commons_id, number=case), act, hand)
 
 
 @transactions.required
 def ring(*, commons_id: int, case: int, hand: Hand) -> str:
-    """Make the move that the passing of days calls for, if it still does; say what was done."""
+    """Make the move that the passing of days calls for, if it still does; say what was done.
+
+    Where the book gives more days by now than when the job was promised, it is promised again.
+    """
+    journal.hold(commons_id=commons_id)
     before = queries.case(commons_id=commons_id, number=case)
-    rules = _procedure(commons_id, _today(commons_id, hand))
-    today = _today(commons_id, hand)
-    for due_move, first in clocks.due(case=before.so_far, procedure=rules):
+    if before.version != before.finding.version:
+        return f"no longer due: finding {before.finding.number} changed"
+    kept = commons_queries.commons(commons_id=commons_id)
+    today = kept.day_of(hand.clock())
+    for due_move, first in _due(commons_id, before.so_far, today):
         if first <= today:
-            act = Act(move=due_move, role=Role.BOOK)
-            after = move(commons_id=commons_id, case=case, act=act, hand=hand)
+            after = _moved(before, Act(move=due_move, role=Role.BOOK), hand)
             return f"{due_move}: now {after.state}"
+        _promise(before.number, len(before.events), due_move, first, kept=kept, hand=hand)
+        return f"not due before {first}"
     return "no longer due"
+
+
+def _heard(commons_id: int, number: int, hand: Hand) -> int:
+    case = queries.last_on_finding(commons_id=commons_id, finding=number)
+    if case is None or _set_aside_for_want(commons_id, case):
+        return _note(commons_id, judgement.finding(commons_id=commons_id, number=number), hand)
+    return _send_back(commons_id, case, hand)
+
+
+def _set_aside_for_want(commons_id: int, case: queries.CaseRecord) -> bool:
+    """Return whether a case was set aside when its finding did not stand."""
+    if case.so_far.state is not State.SET_ASIDE:
+        return False
+    return not judgement.finding(
+        commons_id=commons_id, number=case.finding.number, version=case.version
+    ).standing
 
 
 def _note(commons_id: int, finding: judgement.FindingRecord, hand: Hand) -> int:
     ladder_id = finding.finding.or_else
     if ladder_id is None or not finding.standing:
         return 0
+    event = Event(
+        move=Move.NOTE,
+        actor=THE_COMPUTER,
+        on=commons_queries.commons(commons_id=commons_id).day_of(hand.clock()),
+        subjects=queries.concerned(commons_id=commons_id, finding=finding),
+    )
+    procedure.advance(case=None, event=event, procedure=_procedure(commons_id, event.on))
     number = models.Case.objects.filter(commons_id=commons_id).count() + 1
     models.Case.objects.create(
         commons_id=commons_id, number=number, finding=finding.number, ladder=ladder_id
     )
-    event = Event(
-        move=Move.NOTE,
-        actor=THE_COMPUTER,
-        on=_today(commons_id, hand),
-        subjects=queries.concerned(commons_id=commons_id, finding=finding),
+    writing.append_event(
+        commons_id=commons_id,
+        case=number,
+        place=1,
+        event=event,
+        resting=finding,
+        effects=(),
+        hand=hand,
     )
-    procedure.advance(case=None, event=event, procedure=_procedure(commons_id, event.on))
-    _append(commons_id, number, 1, event, finding, (), hand)
     return 1
 
 
@@ -177,162 +205,98 @@ def _send_back(commons_id: int, case: queries.CaseRecord, hand: Hand) -> int:
     returnable = case.so_far.state in moves.row_of(Move.RETURN_TO_CHECKING).sources
     if case.version == case.finding.version or not returnable:
         return 0
+    kept = commons_queries.commons(commons_id=commons_id)
     what = "changed" if case.finding.standing else "was withdrawn"
     event = Event(
         move=Move.RETURN_TO_CHECKING,
         actor=THE_COMPUTER,
-        on=_today(commons_id, hand),
+        on=kept.day_of(hand.clock()),
         reason=f"finding {case.finding.number} {what} (version {case.finding.version})",
     )
     if case.so_far.state is State.FINAL:
-        _undo(commons_id, case, event.reason, hand)
-    _advance(commons_id, case, event, hand)
+        writing.undo(commons_id=commons_id, case=case, reason=event.reason, hand=hand)
+    _advance(case, event, kept=kept, hand=hand)
     return 1
 
 
-def _advance(commons_id: int, before: queries.CaseRecord, event: Event, hand: Hand) -> CaseSoFar:
-    rules = _procedure(commons_id, event.on)
+def _moved(before: queries.CaseRecord, act: Act, hand: Hand) -> CaseSoFar:
+    kept = commons_queries.commons(commons_id=before.commons_id)
+    actor = Actor(role=Role(act.role), member=act.member)
+    event = Event(
+        move=Move(act.move),
+        actor=actor,
+        on=kept.day_of(hand.clock()),
+        reason=act.reason,
+        officer=act.officer,
+        delivery=None if act.handed is None else _delivery(act.handed),
+    )
+    _check_office(kept.commons_id, actor, event.on)
+    _check_finding(before, event.move)
+    event = replace(
+        event,
+        concerns_board=_concerns_board(kept.commons_id, before.so_far.subjects, event.on),
+        monitors=_watching(kept.commons_id, before),
+    )
+    if event.move in (Move.TELL, Move.DECIDE):
+        event = _with_step(kept.commons_id, before, event)
+    return _advance(before, event, kept=kept, hand=hand)
+
+
+def _advance(
+    before: queries.CaseRecord, event: Event, *, kept: commons_queries.CommonsRecord, hand: Hand
+) -> CaseSoFar:
+    rules = _procedure(kept.commons_id, event.on)
     after = procedure.advance(case=before.so_far, event=event, procedure=rules)
-    became_final = after.state is State.FINAL
-    effects = tuple(_carry_out(commons_id, before, after, hand)) if became_final else ()
-    place = len(before.events) + 1
-    _append(commons_id, before.number, place, event, before.finding, effects, hand)
-    zone = commons_queries.commons(commons_id=commons_id).zone
-    for due_move, first in clocks.due(case=after, procedure=rules):
-        outbox.enqueue(
-            commons_id=commons_id,
-            kind="case_deadline",
-            key=f"{before.number}/{place}/{due_move}",
-            due_at=periods.start_of_day(first, zone=zone),
-            payload={"case": before.number},
-            clock=hand.clock,
+    effects: tuple[int, ...] = ()
+    if after.state is State.FINAL:
+        effects = tuple(
+            writing.carry_out(commons_id=kept.commons_id, case=before, after=after, hand=hand)
         )
+    place = len(before.events) + 1
+    writing.append_event(
+        commons_id=kept.commons_id,
+        case=before.number,
+        place=place,
+        event=event,
+        resting=_resting(before, event.move),
+        effects=effects,
+        hand=hand,
+    )
+    for due_move, first in clocks.due(case=after, procedure=rules):
+        _promise(before.number, place, due_move, first, kept=kept, hand=hand)
     return after
 
 
-def _append(
-    commons_id: int,
+def _resting(before: queries.CaseRecord, move: Move) -> judgement.FindingRecord:
+    """Return the version of the finding that a case rests on after a move."""
+    if move in writing.RENEWING or before.version == before.finding.version:
+        return before.finding
+    return judgement.finding(
+        commons_id=before.commons_id, number=before.finding.number, version=before.version
+    )
+
+
+def _due(commons_id: int, case: CaseSoFar, day: date) -> Sequence[tuple[Move, date]]:
+    return clocks.due(case=case, procedure=_procedure(commons_id, day))
+
+
+def _promise(
     case: int,
     place: int,
-    event: Event,
-    finding: judgement.FindingRecord,
-    effects: tuple[int, ...],
+    due_move: Move,
+    first: date,
+    *,
+    kept: commons_queries.CommonsRecord,
     hand: Hand,
 ) -> None:
-    details = columns.details(event)
-    facts: dict[str, Fact] = {
-        "case": case,
-        "finding": finding.number,
-        "version": finding.version,
-        "inputs": finding.finding.inputs,
-        "clause": finding.finding.key.clause,
-        "edition": finding.finding.edition,
-        "role": event.actor.role.value,
-        "actor": event.actor.member,
-        "effects": list(effects),
-        **details,
-    }
-    receipt = commons.enter(
-        commons_id=commons_id,
-        kind=f"case_{event.move.value}",
-        facts=facts,
-        texts={"reason": event.reason} if event.reason else {},
-        subject=finding.finding.key.subject,
-        hand=hand,
+    outbox.enqueue(
+        commons_id=kept.commons_id,
+        kind="case_deadline",
+        key=f"{case}/{place}/{due_move}/{first}",
+        due_at=periods.start_of_day(first, zone=kept.zone),
+        payload={"case": case},
+        clock=hand.clock,
     )
-    models.Event.objects.create(
-        commons_id=commons_id,
-        case=case,
-        place=place,
-        move=event.move.value,
-        role=event.actor.role.value,
-        member=event.actor.member,
-        on=event.on,
-        reason=event.reason,
-        details=details,
-        effects=list(effects),
-        finding_version=finding.version,
-        entry_number=receipt.number,
-    )
-
-
-def _carry_out(
-    commons_id: int, case: queries.CaseRecord, after: CaseSoFar, hand: Hand
-) -> Iterable[int]:
-    """Make the entries that a final decision calls for, and yield their numbers."""
-    rungs = queries.ladder_of(commons_id=commons_id, case=case)
-    assert after.step is not None and after.final_on is not None, "a final case was decided"
-    step = rungs.steps[after.step]
-    subject = case.finding.finding.key.subject
-    match step:
-        case clauses.Warning() | clauses.Referral():
-            pass
-        case clauses.Fine():
-            if after.amount_minor:
-                yield movements.charge_due(
-                    commons_id=commons_id,
-                    member=subject,
-                    kind=movements_queries.FINE,
-                    amount=after.amount_minor,
-                    case=case.number,
-                    hand=hand,
-                ).number
-        case clauses.Suspension():
-            first = after.final_on + timedelta(days=1)
-            during = DateRange(first=first, until=first + timedelta(days=step.days))
-            for member in sorted(queries.responsible(case)):
-                yield commons.suspend(
-                    commons_id=commons_id,
-                    member=member,
-                    clause=rungs.head.id,
-                    during=during,
-                    reason=f"case {case.number}",
-                    hand=hand,
-                ).number
-        case _:
-            assert_never(step)
-    if rungs.restore:
-        yield from _restore(commons_id, case, hand)
-
-
-def _restore(commons_id: int, case: queries.CaseRecord, hand: Hand) -> Iterable[int]:
-    """Give back what lay beyond a limit.
-
-    Beyond an allotment nothing is given back here: the payback clause takes it off the next one.
-    """
-    finding = case.finding.finding
-    clause = queries.book_of(commons_id=commons_id, case=case).clause(finding.key.clause)
-    if not isinstance(clause, clauses.QuantityLimit) or clause.more_than is None:
-        return
-    season = seasons.holding(
-        opened=seasons.seasons(commons_id=commons_id),
-        resource=finding.key.resource,
-        day=finding.key.window.first,
-    )
-    if season is not None and finding.overuse:
-        yield movements.give_back(
-            commons_id=commons_id,
-            member=finding.key.subject,
-            season=season.code,
-            amount=finding.overuse,
-            case=case.number,
-            hand=hand,
-        ).number
-
-
-def _undo(commons_id: int, case: queries.CaseRecord, reason: str, hand: Hand) -> None:
-    """Reverse the entries that carried a decision out which no longer stands."""
-    for number in case.effects:
-        journal.reverse(
-            commons_id=commons_id,
-            number=number,
-            reason=reason,
-            by=hand.by,
-            occurred_at=hand.clock(),
-            day=_today(commons_id, hand),
-            clock=hand.clock,
-            chance=hand.chance,
-        )
 
 
 def _delivery(handed: Handed) -> Delivery:
@@ -383,17 +347,20 @@ def _check_office(commons_id: int, actor: Actor, day: date) -> None:
         raise RoleNotHeld(member=actor.member, role=actor.role.value, day=day)
 
 
+def _check_finding(before: queries.CaseRecord, move: Move) -> None:
+    if move in CARRYING_ON and not before.finding.standing:
+        raise FindingWithdrawn(move=move, finding=before.finding.number)
+    if move in SETTLING and before.version != before.finding.version:
+        raise FindingChanged(move=move, finding=before.finding.number)
+
+
 def _concerns_board(commons_id: int, subjects: frozenset[int], day: date) -> bool:
     board = commons_queries.holders_of(commons_id=commons_id, role=Role.BOARD.value, day=day)
     return bool(board & subjects)
 
 
-def _watching(commons_id: int, finding: judgement.FindingRecord) -> frozenset[int]:
-    """Return the monitors who checked a take of the subject in the finding's window."""
-    key = finding.finding.key
-    checks = fieldwork.inspections(commons_id=commons_id, during=key.window)
-    return frozenset(check.monitor for check in checks if check.member == key.subject)
-
-
-def _today(commons_id: int, hand: Hand) -> date:
-    return commons_queries.commons(commons_id=commons_id).day_of(hand.clock())
+def _watching(commons_id: int, case: queries.CaseRecord) -> frozenset[int]:
+    """Return the monitors who checked a take of those responsible in the finding's window."""
+    checks = fieldwork.inspections(commons_id=commons_id, during=case.finding.finding.key.window)
+    held_to_account = queries.responsible(case)
+    return frozenset(check.monitor for check in checks if check.member in held_to_account)

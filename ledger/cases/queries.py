@@ -1,7 +1,7 @@
 """Cases as they stand, and the step that a ladder comes to."""
 
 from collections import defaultdict
-from collections.abc import Iterable
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import date
 from itertools import pairwise
@@ -15,6 +15,7 @@ from ledger.bylaws import queries as bylaws
 from ledger.cases import columns, models
 from ledger.commons import queries as commons
 from ledger.foundation.errors import LedgerError
+from ledger.journal import queries as journal
 from ledger.judgement import queries as judgement
 
 # After these moves nothing follows.
@@ -37,6 +38,7 @@ class CaseRecord:
     checking, for the record of how long things took.
     """
 
+    commons_id: int
     number: int
     finding: judgement.FindingRecord
     version: int
@@ -53,27 +55,27 @@ class CaseRecord:
 
 
 def cases(
-    *, commons_id: int, ladder: str | None = None, is_open: bool | None = None
+    *,
+    commons_id: int,
+    ladder: str | None = None,
+    findings: Collection[int] | None = None,
+    is_open: bool | None = None,
 ) -> tuple[CaseRecord, ...]:
     """Return the cases of a commons in order of number.
 
     :param ladder: only those under this ladder.
+    :param findings: only those on findings of these numbers.
     :param is_open: only those that something may still happen to, or only those that ended.
     """
     rows = models.Case.objects.filter(commons_id=commons_id).order_by("number")
     if ladder is not None:
         rows = rows.filter(ladder=ladder)
+    if findings is not None:
+        rows = rows.filter(finding__in=findings)
     if is_open is not None:
         ended = models.Event.objects.filter(commons_id=commons_id, move__in=ENDING).values("case")
         rows = rows.exclude(number__in=ended) if is_open else rows.filter(number__in=ended)
-    wanted = list(rows)
-    events: dict[int, list[models.Event]] = defaultdict(list)
-    for event in models.Event.objects.filter(
-        commons_id=commons_id, case__in=[row.number for row in wanted]
-    ).order_by("case", "place"):
-        events[event.case].append(event)
-    found = judgement.by_number(commons_id=commons_id, numbers=[row.finding for row in wanted])
-    return tuple(_record(row, events[row.number], found[row.finding]) for row in wanted)
+    return _records(commons_id, list(rows))
 
 
 def case(*, commons_id: int, number: int) -> CaseRecord:
@@ -84,9 +86,7 @@ def case(*, commons_id: int, number: int) -> CaseRecord:
     row = models.Case.objects.filter(commons_id=commons_id, number=number).first()
     if row is None:
         raise UnknownCase(found=f"of number {number}")
-    events = models.Event.objects.filter(commons_id=commons_id, case=number).order_by("place")
-    finding = judgement.finding(commons_id=commons_id, number=row.finding)
-    return _record(row, events, finding)
+    return _records(commons_id, [row])[0]
 
 
 def case_on(*, commons_id: int, clause: str, subject: int, first: date) -> CaseRecord:
@@ -101,13 +101,9 @@ def case_on(*, commons_id: int, clause: str, subject: int, first: date) -> CaseR
     raise UnknownCase(found=f"on clause {clause}, subject {subject}, from {first}")
 
 
-def number_on_finding(*, commons_id: int, finding: int) -> int | None:
-    """Return the number of the case on a finding, if one was opened."""
-    return (
-        models.Case.objects.filter(commons_id=commons_id, finding=finding)
-        .values_list("number", flat=True)
-        .first()
-    )
+def last_on_finding(*, commons_id: int, finding: int) -> CaseRecord | None:
+    """Return the last case that was noted on a finding, if one was."""
+    return next(reversed(cases(commons_id=commons_id, findings=[finding])), None)
 
 
 def concerned(*, commons_id: int, finding: judgement.FindingRecord) -> frozenset[int]:
@@ -139,7 +135,11 @@ def book_of(*, commons_id: int, case: CaseRecord) -> clauses.Book:
 
 
 def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.StepDue:
-    """Return the step that the ladder comes to if the case is decided on a day."""
+    """Return the step that the ladder comes to if the case is decided on a day.
+
+    An earlier case whose finding was withdrawn since does not count.
+    """
+    about = judgement.numbers_about(commons_id=commons_id, members=case.so_far.subjects)
     earlier = [
         ladder.EarlierAct(
             case=other.number,
@@ -147,8 +147,10 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
             told_on=other.so_far.told_on,
             final_on=other.so_far.final_on,
         )
-        for other in cases(commons_id=commons_id, ladder=case.ladder)
-        if other.number != case.number and responsible(other) & responsible(case)
+        for other in cases(commons_id=commons_id, ladder=case.ladder, findings=about)
+        if other.number != case.number
+        and other.finding.standing
+        and responsible(other) & responsible(case)
     ]
     return ladder.step_for(
         ladder=ladder_of(commons_id=commons_id, case=case),
@@ -185,13 +187,30 @@ def days_between(case: CaseRecord) -> tuple[int | None, int | None]:
     )
 
 
+def _records(commons_id: int, rows: Sequence[models.Case]) -> tuple[CaseRecord, ...]:
+    events: dict[int, list[models.Event]] = defaultdict(list)
+    for event in models.Event.objects.filter(
+        commons_id=commons_id, case__in=[row.number for row in rows]
+    ).order_by("case", "place"):
+        events[event.case].append(event)
+    found = judgement.by_number(commons_id=commons_id, numbers=[row.finding for row in rows])
+    texts = journal.texts(
+        commons_id=commons_id,
+        numbers=[event.entry_number for kept in events.values() for event in kept],
+    )
+    return tuple(_record(row, events[row.number], found[row.finding], texts) for row in rows)
+
+
 def _record(
-    row: models.Case, events: Iterable[models.Event], finding: judgement.FindingRecord
+    row: models.Case,
+    kept: Sequence[models.Event],
+    finding: judgement.FindingRecord,
+    texts: Mapping[int, Mapping[str, str]],
 ) -> CaseRecord:
-    kept = list(events)
-    folded = tuple(columns.event(each) for each in kept)
     assert all(one.place + 1 == two.place for one, two in pairwise(kept)), "events stand in a row"
+    folded = tuple(columns.event(each, texts.get(each.entry_number, {})) for each in kept)
     return CaseRecord(
+        commons_id=row.commons_id,
         number=row.number,
         finding=finding,
         version=kept[-1].finding_version,
@@ -199,5 +218,13 @@ def _record(
         so_far=record.fold(folded),
         events=folded,
         entries=tuple(each.entry_number for each in kept),
-        effects=tuple(kept[-1].effects),
+        effects=_effects(kept),
     )
+
+
+def _effects(kept: Sequence[models.Event]) -> tuple[int, ...]:
+    """Return the entries that carried the decision out which stands, if one was."""
+    for event in reversed(kept):
+        if event.effects or event.move == Move.RETURN_TO_CHECKING:
+            return tuple(event.effects)
+    return ()

@@ -11,7 +11,7 @@ from ledger.foundation import outbox
 from ledger.foundation.clocks import Chance, Clock
 from ledger.foundation.hands import THE_BOOK, Hand
 from ledger.foundation.outbox import DueJob
-from ledger.tasks.handlers import HANDLERS
+from ledger.tasks import handlers
 
 logger = logging.getLogger(__name__)
 
@@ -44,17 +44,24 @@ def _done(job: DueJob, *, clock: Clock, chance: Chance) -> Drained:
     hand = Hand(by=THE_BOOK, clock=clock, chance=chance)
     try:
         with transaction.atomic():
-            outcome = HANDLERS[job.kind](job, hand)
+            outbox.claim(job_id=job.id)
+            outcome = handlers.do(job=job, hand=hand)
             outbox.mark_done(job_id=job.id, outcome=outcome, at=clock())
     except outbox.JobNotOpen:
         return Drained(job=job, outcome="done by another", failed=False)
     except Exception as error:
         logger.exception("job %s of kind %s failed", job.id, job.kind)
+        return _failed(job, f"{type(error).__name__}: {error}", clock=clock)
+    return Drained(job=job, outcome=outcome, failed=False)
+
+
+def _failed(job: DueJob, error: str, *, clock: Clock) -> Drained:
+    """Note why a job failed and when it rings again."""
+    try:
         with transaction.atomic():
             outbox.mark_failed(
-                job_id=job.id,
-                error=f"{type(error).__name__}: {error}",
-                again_at=clock() + PATIENCE * (job.attempts + 1),
+                job_id=job.id, error=error, again_at=clock() + PATIENCE * (job.attempts + 1)
             )
-        return Drained(job=job, outcome=str(error), failed=True)
-    return Drained(job=job, outcome=outcome, failed=False)
+    except outbox.JobNotOpen:
+        return Drained(job=job, outcome="done by another", failed=False)
+    return Drained(job=job, outcome=error, failed=True)

@@ -2,13 +2,23 @@
 
 from collections.abc import Callable, Mapping
 from datetime import date
+from typing import ClassVar
 
 from governance.periods import DateRange
 from ledger.advice import operations as advice
 from ledger.cases import operations as cases
+from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
 from ledger.foundation.outbox import DueJob
 from ledger.judgement import operations as judgement
+
+
+class UnknownKind(LedgerError):
+    """A job was promised that nothing here does."""
+
+    code: ClassVar[str] = "tasks.unknown_kind"
+    message: ClassVar[str] = "Found a job of the kind {found!r}; accepted are {accepted}."
+
 
 Handler = Callable[[DueJob, Hand], str]
 
@@ -42,11 +52,8 @@ def assess_duties(job: DueJob, hand: Hand) -> str:
 
 
 def close_season(job: DueJob, hand: Hand) -> str:
-    """Close a season, once the judge has read everything before."""
-    receipt = judgement.close_season(
-        commons_id=job.commons_id, season=job.payload["season"], hand=hand
-    )
-    return f"closed by entry {receipt.number}"
+    """Close a season, once the judge has read everything before, if it is still open."""
+    return judgement.ring_close(commons_id=job.commons_id, season=job.payload["season"], hand=hand)
 
 
 def advise(job: DueJob, hand: Hand) -> str:
@@ -62,3 +69,14 @@ HANDLERS: Mapping[str, Handler] = {
     "close_season": close_season,
     "advise": advise,
 }
+
+
+def do(*, job: DueJob, hand: Hand) -> str:
+    """Do what a job promised and say what came of it.
+
+    :raises UnknownKind: if nothing here does such work.
+    """
+    handler = HANDLERS.get(job.kind)
+    if handler is None:
+        raise UnknownKind(found=job.kind, accepted=", ".join(HANDLERS))
+    return handler(job, hand)

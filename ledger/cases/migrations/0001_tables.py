@@ -21,7 +21,8 @@ class Migration(migrations.Migration):
                 ('ladder', models.CharField(max_length=80)),
             ],
             options={
-                'constraints': [models.UniqueConstraint(fields=('commons_id', 'number'), name='case_number_once'), models.UniqueConstraint(fields=('commons_id', 'finding'), name='case_of_finding_once')],
+                'indexes': [models.Index(fields=['commons_id', 'finding'], name='case_finding')],
+                'constraints': [models.UniqueConstraint(fields=('commons_id', 'number'), name='case_number_once')],
             },
         ),
         migrations.CreateModel(
@@ -35,7 +36,6 @@ class Migration(migrations.Migration):
                 ('role', models.CharField(max_length=12)),
                 ('member', models.PositiveIntegerField(null=True)),
                 ('on', models.DateField()),
-                ('reason', models.TextField()),
                 ('details', models.JSONField()),
                 ('effects', models.JSONField()),
                 ('finding_version', models.PositiveIntegerField()),
