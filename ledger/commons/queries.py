@@ -226,8 +226,7 @@ def orders(*, commons_id: int, up_to: int | None = None) -> tuple[Order, ...]:
 def order_records(*, commons_id: int) -> tuple[OrderRecord, ...]:
     """Return the outside orders with their notices, oldest first."""
     rows = _known(models.OutsideOrder.objects.all(), commons_id=commons_id, up_to=None)
-    entries = journal.entries(commons_id=commons_id, kinds=(ORDER,))
-    notices = {entry.number: entry.texts.get("notice", "") for entry in entries}
+    texts = journal.texts(commons_id=commons_id, numbers=[row.entry_number for row in rows])
     return tuple(
         OrderRecord(
             entry=row.entry_number,
@@ -236,7 +235,7 @@ def order_records(*, commons_id: int) -> tuple[OrderRecord, ...]:
             zones=tuple(row.zones),
             first=row.first_day,
             until=row.until_day,
-            notice=notices[row.entry_number],
+            notice=texts.get(row.entry_number, {}).get("notice", ""),
         )
         for row in rows
     )

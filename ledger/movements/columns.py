@@ -16,7 +16,7 @@ def _microseconds(instant: datetime) -> int:
 
 
 def withdrawals(*, rows: Iterable[Row], resource: str, base: str) -> facts.Withdrawals:
-    """Return the takes of one resource; a slip without a hand-in time counts as recorded."""
+    """Return the takes of one resource, a row for each line of a slip, in order of entry."""
     zones: dict[str, int] = {}
     lines = [
         (

@@ -1,16 +1,12 @@
-"""The writers of withdrawals, contributions and dues: the checks of the trade, then one entry."""
+"""The writers of withdrawals, contributions and dues: each act is one entry."""
 
-from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
-from datetime import UTC, date, datetime
-from decimal import Decimal
-from fractions import Fraction
+from collections.abc import Iterable, Sequence
+from datetime import date
 from typing import ClassVar
 
 from governance import quantities
 from governance.bylaws import clauses
 from governance.periods import DateRange
-from ledger.bylaws import queries as bylaws
 from ledger.commons import operations as commons
 from ledger.commons import queries as commons_queries
 from ledger.foundation import transactions
@@ -18,80 +14,44 @@ from ledger.foundation.errors import LedgerError
 from ledger.foundation.hands import Hand
 from ledger.journal import operations as journal
 from ledger.journal import queries as journal_queries
-from ledger.journal.leaves import Draft, Fact, Posting, Receipt
-from ledger.movements import queries
+from ledger.journal.leaves import Draft, Posting, Receipt
+from ledger.movements import queries, writing
+from ledger.movements.writing import Line as Line
+from ledger.movements.writing import Slip as Slip
+from ledger.movements.writing import base_amount as base_amount
 from ledger.seasons import queries as seasons
 
-DESK = "desk"
-
-
-class NothingTaken(LedgerError):
-    """A slip names no amount above zero."""
-
-    code: ClassVar[str] = "movements.nothing_taken"
-    message: ClassVar[str] = "Slip {slip}: found {found}; accepted are amounts above zero."
+_WORK = {"resource": "work", "unit": "min"}
 
 
 class NotAWithdrawal(LedgerError):
     """An entry that is to be corrected is of another kind."""
 
     code: ClassVar[str] = "movements.not_a_withdrawal"
-    message: ClassVar[str] = "Entry {number} is a {kind}; only a withdrawal is corrected here."
+    message: ClassVar[str] = "Found entry {number} to be a {kind}; accepted is a withdrawal."
 
 
 class NothingGiven(LedgerError):
-    """A contribution or a payment is not above zero."""
+    """A contribution, a payment or what is given back is not above zero."""
 
     code: ClassVar[str] = "movements.nothing_given"
-    message: ClassVar[str] = "Found {found}; accepted is an amount above zero."
+    message: ClassVar[str] = "Found the amount {found}; accepted is a whole number above zero."
 
 
-class NotPayable(LedgerError):
-    """Money is given for a duty that money cannot stand for."""
+class DutiesAlreadyAssessed(LedgerError):
+    """The duties of a season were charged before."""
 
-    code: ClassVar[str] = "movements.not_payable"
-    message: ClassVar[str] = "Clause {clause} on {day} is no duty of work that can be paid off."
-
-
-class NoSuchSeason(LedgerError):
-    """Work is recorded before any season was opened."""
-
-    code: ClassVar[str] = "movements.no_such_season"
-    message: ClassVar[str] = "No season has been opened that work on {day} could count for."
+    code: ClassVar[str] = "movements.duties_already_assessed"
+    message: ClassVar[str] = (
+        "Found the duties of the season from {first} charged by entry {entry}; accepted is once."
+    )
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Line:
-    """One resource on a slip: the measure as given, with its UCUM unit."""
+class UnknownDue(LedgerError):
+    """A due is of a kind that the book does not keep."""
 
-    resource: str
-    zone: str
-    given: Decimal
-    unit: str
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Slip:
-    """One landing slip: who took what, where and when, and when the slip was handed in."""
-
-    slip: str
-    member: int
-    taken_at: datetime
-    handed_in: datetime
-    draw_point: str
-    lines: tuple[Line, ...]
-    note: str = ""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class _Kept:
-    """What the checks of a batch look up, read once."""
-
-    commons: commons_queries.CommonsRecord
-    members: Mapping[int, commons_queries.MemberRecord]
-    resources: Mapping[str, commons_queries.ResourceRecord]
-    zones: Mapping[str, commons_queries.ZoneRecord]
-    seasons: Mapping[str, seasons.SeasonRecord]
+    code: ClassVar[str] = "movements.unknown_due"
+    message: ClassVar[str] = "Found a due of the kind {found!r}; accepted are {accepted}."
 
 
 @transactions.required
@@ -100,16 +60,14 @@ def record_withdrawals(
 ) -> tuple[Receipt, ...]:
     """Record slips in order, one entry each; what breaks a bylaw is recorded all the same.
 
-    The same slip number twice adds nothing and returns the first receipt.
+    The same slip number twice adds nothing and returns the first receipt. All are recorded or none:
+    what :func:`ledger.movements.writing.withdrawal` refuses in one slip is raised for all.
 
-    :raises ledger.commons.operations.UnknownMember: if nobody has a slip's member number.
-    :raises ledger.commons.queries.UnknownResource: if a resource is not kept.
-    :raises ledger.commons.operations.UnknownZone: if a zone is not a part of its resource.
-    :raises governance.quantities.UnitMismatch: if a unit cannot convert to the resource's base.
-    :raises NothingTaken: if an amount is not above zero.
+    :raises ledger.journal.operations.KeyReused: if a slip number stands for another content.
     """
-    kept = _kept(commons_id)
-    drafts = [_draft(kept, slip, key=slip.slip) for slip in slips]
+    journal.hold(commons_id=commons_id)
+    kept = writing.kept(commons_id=commons_id)
+    drafts = [writing.withdrawal(kept=kept, slip=slip, key=slip.slip) for slip in slips]
     return _append(commons_id, drafts, hand)
 
 
@@ -119,13 +77,20 @@ def correct_withdrawal(
 ) -> tuple[Receipt, Receipt]:
     """Reverse a recorded slip and record it anew; both entries stay, with the reason.
 
+    The accounts of a closed season stay as they were reported: what differs is told apart. The
+    right slip is refused for what :func:`ledger.movements.writing.withdrawal` refuses.
+
     :raises NotAWithdrawal: if the entry is of another kind.
+    :raises ledger.journal.queries.EntryNotFound: if there is no such entry.
     :raises ledger.journal.operations.AlreadyReversed: if it was corrected before.
     """
-    kind = journal_queries.entry(commons_id=commons_id, number=number).kind
-    if kind != queries.WITHDRAWAL:
-        raise NotAWithdrawal(number=number, kind=kind)
-    kept = _kept(commons_id)
+    journal.hold(commons_id=commons_id)
+    wrong = journal_queries.entry(commons_id=commons_id, number=number)
+    if wrong.kind != queries.WITHDRAWAL:
+        raise NotAWithdrawal(number=number, kind=wrong.kind)
+    kept = writing.kept(commons_id=commons_id)
+    apart = writing.told_apart(kept=kept, undone=wrong)
+    right = writing.withdrawal(kept=kept, slip=slip, key=None, also=apart)
     now = hand.clock()
     undone = journal.reverse(
         commons_id=commons_id,
@@ -137,7 +102,7 @@ def correct_withdrawal(
         clock=hand.clock,
         chance=hand.chance,
     )
-    (redone,) = _append(commons_id, [_draft(kept, slip, key=None)], hand)
+    (redone,) = _append(commons_id, [right], hand)
     return undone, redone
 
 
@@ -151,21 +116,27 @@ def assess_duties(
 ) -> Receipt | None:
     """Charge the members with the minutes that each duty asks of them in a season.
 
+    Where nobody owes anything there is no entry.
+
     :param duties: each duty with the number of a member who owes it.
+    :raises DutiesAlreadyAssessed: if it was done for the season that begins on the same day.
     """
+    journal.hold(commons_id=commons_id)
+    first = during.first.isoformat()
+    for row in journal_queries.rows(commons_id=commons_id, kinds=(queries.ASSESSMENT,)):
+        if row.facts["from"] == first:
+            raise DutiesAlreadyAssessed(first=first, entry=row.number)
     postings: list[Posting] = []
     for clause, member in duties:
         owed = quantities.rounded(clause.days * clause.day_minutes, quantities.Rounding.HALF_UP)
         account = queries.duty_account(clause=clause.head.id, first=during.first, member=member)
-        source = f"duties:{clause.head.id}:{during.first.isoformat()}"
-        postings += _moved(source, account, resource="work", unit="min", amount=owed)
+        postings += writing.moved(f"duties:{clause.head.id}:{first}", account, amount=owed, **_WORK)
     if not postings:
         return None
-    facts = {"from": during.first.isoformat(), "until": during.until.isoformat()}
     return commons.enter(
         commons_id=commons_id,
-        kind="duties_assessed",
-        facts=facts,
+        kind=queries.ASSESSMENT,
+        facts={"from": first, "until": during.until.isoformat()},
         postings=tuple(postings),
         hand=hand,
     )
@@ -179,12 +150,26 @@ def record_work(
 
     :raises NothingGiven: if the minutes are not above zero.
     :raises ledger.commons.operations.UnknownMember: if nobody has the number.
-    :raises NoSuchSeason: if no season has been opened.
+    :raises ledger.movements.writing.NoSuchSeason: if no season has been opened.
+    :raises ledger.movements.writing.NoSuchDuty: if its season knows no duty of this name.
     """
-    owed, given = _duty_accounts(commons_id, member, clause, day, "duty_worked")
-    postings = _moved(owed, given, resource="work", unit="min", amount=_above_zero(minutes))
-    facts: dict[str, Fact] = {"clause": clause, "minutes": minutes}
-    return _contribute(commons_id, queries.WORK, member, day, facts, postings, {"task": task}, hand)
+    _check_above_zero(minutes)
+    commons.check_member(commons_id=commons_id, member=member)
+    window = writing.duty_season(commons_id=commons_id, day=day)
+    writing.check_duty(commons_id=commons_id, clause=clause, day=window.first)
+    owed = queries.duty_account(clause=clause, first=window.first, member=member)
+    worked = queries.worked_account(clause=clause, first=window.first, member=member)
+    draft = Draft(
+        kind=queries.WORK,
+        occurred_at=hand.clock(),
+        day=day,
+        subject=member,
+        facts={"clause": clause, "minutes": minutes},
+        postings=writing.moved(owed, worked, amount=minutes, **_WORK),
+        texts={"task": task},
+    )
+    (receipt,) = _append(commons_id, [draft], hand)
+    return receipt
 
 
 @transactions.required
@@ -193,28 +178,34 @@ def record_money_instead(
 ) -> Receipt:
     """Record money, in the smallest coin, that a member gave instead of work.
 
-    The clause in force on the day says how much work it stands for.
+    The clause in force on the day says how much work it stands for; a part of a minute is lost.
 
     :raises NothingGiven: if the amount is not above zero.
-    :raises NotPayable: if no duty of this name can be paid off.
     :raises ledger.commons.operations.UnknownMember: if nobody has the number.
-    :raises NoSuchSeason: if no season has been opened.
+    :raises ledger.movements.writing.NoSuchSeason: if no season has been opened.
+    :raises ledger.movements.writing.NotPayable: if no duty of this name can be paid off.
     """
-    duties = bylaws.work_duties(commons_id=commons_id, day=day)
-    duty = next((each for each in duties if each.head.id == clause), None)
-    if duty is None or duty.instead is None:
-        raise NotPayable(clause=clause, day=day)
-    days = Fraction(_above_zero(amount)) / duty.instead.money.minor
-    minutes = quantities.rounded(days * duty.day_minutes, quantities.Rounding.DOWN)
-    owed, given = _duty_accounts(commons_id, member, clause, day, "duty_bought")
+    _check_above_zero(amount)
+    commons.check_member(commons_id=commons_id, member=member)
+    window = writing.duty_season(commons_id=commons_id, day=day)
+    minutes = writing.minutes_bought(commons_id=commons_id, clause=clause, day=day, amount=amount)
+    owed = queries.duty_account(clause=clause, first=window.first, member=member)
+    bought = queries.bought_account(clause=clause, first=window.first, member=member)
     money = commons_queries.commons(commons_id=commons_id).money
     paid = f"instead:{clause}:{member}"
-    postings = [
-        *_moved(owed, given, resource="work", unit="min", amount=minutes),
-        *_moved(paid, "cash", resource="money", unit=money, amount=amount),
-    ]
-    facts: dict[str, Fact] = {"clause": clause, "amount": amount, "minutes": minutes}
-    return _contribute(commons_id, queries.MONEY_INSTEAD, member, day, facts, postings, {}, hand)
+    draft = Draft(
+        kind=queries.MONEY_INSTEAD,
+        occurred_at=hand.clock(),
+        day=day,
+        subject=member,
+        facts={"clause": clause, "amount": amount, "minutes": minutes},
+        postings=(
+            *writing.moved(owed, bought, amount=minutes, **_WORK),
+            *writing.moved(paid, "cash", resource="money", unit=money, amount=amount),
+        ),
+    )
+    (receipt,) = _append(commons_id, [draft], hand)
+    return receipt
 
 
 @transactions.required
@@ -224,7 +215,10 @@ def charge_due(
     """Charge a member with a due that a decided case makes, in the smallest coin.
 
     :raises NothingGiven: if the amount is not above zero.
+    :raises UnknownDue: if the kind is not one of ``queries.DUE_KINDS``.
+    :raises ledger.commons.operations.UnknownMember: if nobody has the number.
     """
+    _check_due(commons_id, member, kind, amount)
     money = commons_queries.commons(commons_id=commons_id).money
     due = queries.due_account(kind=kind, member=member)
     return commons.enter(
@@ -232,9 +226,7 @@ def charge_due(
         kind=queries.DUE_CHARGED,
         facts={"due": kind, "amount": amount, "case": case},
         subject=member,
-        postings=_moved(
-            f"charged:{kind}", due, resource="money", unit=money, amount=_above_zero(amount)
-        ),
+        postings=writing.moved(f"charged:{kind}", due, resource="money", unit=money, amount=amount),
         hand=hand,
     )
 
@@ -244,18 +236,21 @@ def pay_due(*, commons_id: int, member: int, kind: str, amount: int, hand: Hand)
     """Record that a member paid a due, in the smallest coin.
 
     :raises NothingGiven: if the amount is not above zero.
+    :raises UnknownDue: if the kind is not one of ``queries.DUE_KINDS``.
+    :raises ledger.commons.operations.UnknownMember: if nobody has the number.
     """
+    _check_due(commons_id, member, kind, amount)
     money = commons_queries.commons(commons_id=commons_id).money
     due = queries.due_account(kind=kind, member=member)
-    paid = f"paid:{kind}:{member}"
+    paid = queries.paid_account(kind=kind, member=member)
     return commons.enter(
         commons_id=commons_id,
-        kind="due_paid",
+        kind=queries.DUE_PAID,
         facts={"due": kind, "amount": amount},
         subject=member,
         postings=(
-            *_moved(due, paid, resource="money", unit=money, amount=_above_zero(amount)),
-            *_moved(f"received:{kind}", "cash", resource="money", unit=money, amount=amount),
+            *writing.moved(due, paid, resource="money", unit=money, amount=amount),
+            *writing.moved(f"received:{kind}", "cash", resource="money", unit=money, amount=amount),
         ),
         hand=hand,
     )
@@ -267,10 +262,17 @@ def give_back(
 ) -> Receipt:
     """Move what a member took too much from the member's right back to all.
 
-    Out of what is left of the season, or, once that is closed, out of the next one's allotment.
+    Out of what is left of the season, or, once that is closed, out of the next allotment that the
+    member gets.
 
     :param amount: base units.
+    :raises NothingGiven: if the amount is not above zero.
+    :raises ledger.commons.operations.UnknownMember: if nobody has the number.
+    :raises ledger.seasons.queries.UnknownSeason: if the season was not opened.
     """
+    journal.hold(commons_id=commons_id)
+    _check_above_zero(amount)
+    commons.check_member(commons_id=commons_id, member=member)
     opened = seasons.season(commons_id=commons_id, code=season)
     resource = commons_queries.resource(commons_id=commons_id, code=opened.resource)
     if opened.closed:
@@ -284,142 +286,11 @@ def give_back(
         kind=queries.GIVEN_BACK,
         facts={"season": season, "amount": amount, "case": case},
         subject=member,
-        postings=_moved(
+        postings=writing.moved(
             giving, receiving, resource=resource.code, unit=resource.base, amount=amount
         ),
         hand=hand,
     )
-
-
-def base_amount(*, given: Decimal, unit: str, base: str) -> int:
-    """Return a measure as given in whole base units, rounded half up once.
-
-    :raises governance.quantities.UnitMismatch: if the unit does not convert to the base.
-    """
-    exact = quantities.converted(Fraction(given), from_unit=unit, to_unit=base)
-    return quantities.rounded(exact, quantities.Rounding.HALF_UP)
-
-
-def _kept(commons_id: int) -> _Kept:
-    return _Kept(
-        commons=commons_queries.commons(commons_id=commons_id),
-        members=commons_queries.members(commons_id=commons_id),
-        resources=commons_queries.resources(commons_id=commons_id),
-        zones=commons_queries.zones(commons_id=commons_id),
-        seasons=seasons.seasons(commons_id=commons_id),
-    )
-
-
-def _draft(kept: _Kept, slip: Slip, *, key: str | None) -> Draft:
-    if slip.member not in kept.members:
-        raise commons.UnknownMember(found=slip.member)
-    if not slip.lines:
-        raise NothingTaken(slip=slip.slip, found="no line")
-    day = kept.commons.day_of(slip.taken_at)
-    lines: list[Fact] = []
-    postings: list[Posting] = []
-    for line in slip.lines:
-        amount = _base_amount(kept, slip, line)
-        lines.append(
-            {
-                "resource": line.resource,
-                "zone": line.zone,
-                "given": format(line.given, "f"),
-                "unit": line.unit,
-                "amount": amount,
-            }
-        )
-        season = _season_code(kept, line.resource, day)
-        postings += _moved(
-            seasons.left_account(season=season, member=slip.member),
-            seasons.taken_account(season=season, member=slip.member),
-            resource=line.resource,
-            unit=kept.resources[line.resource].base,
-            amount=amount,
-        )
-    return Draft(
-        kind=queries.WITHDRAWAL,
-        occurred_at=slip.taken_at,
-        day=day,
-        subject=slip.member,
-        facts={
-            "slip": slip.slip,
-            "draw_point": slip.draw_point,
-            "handed_in": slip.handed_in.astimezone(UTC).isoformat(),
-            "lines": lines,
-        },
-        postings=tuple(postings),
-        texts={"note": slip.note} if slip.note else {},
-        device=DESK,
-        key=key,
-    )
-
-
-def _base_amount(kept: _Kept, slip: Slip, line: Line) -> int:
-    if line.resource not in kept.resources:
-        raise commons_queries.UnknownResource(
-            found=line.resource, accepted=", ".join(kept.resources)
-        )
-    zone = kept.zones.get(line.zone)
-    if zone is None or zone.resource != line.resource:
-        raise commons.UnknownZone(
-            found=line.zone,
-            resource=line.resource,
-            accepted=", ".join(
-                each.code for each in kept.zones.values() if each.resource == line.resource
-            ),
-        )
-    base = kept.resources[line.resource].base
-    amount = base_amount(given=line.given, unit=line.unit, base=base)
-    if amount <= 0:
-        raise NothingTaken(slip=slip.slip, found=f"{line.given} {line.unit} of {line.resource}")
-    return amount
-
-
-def _season_code(kept: _Kept, resource: str, day: date) -> str:
-    """Return the season, or the place beside the seasons, that a take on a day is posted to.
-
-    What comes in after the close keeps its true day but is posted apart, so that a closed season's
-    accounts stay as they were reported.
-    """
-    season = seasons.holding(opened=kept.seasons, resource=resource, day=day)
-    if season is None:
-        return f"{resource}-off-season"
-    return f"{season.code}-after-close" if season.closed else season.code
-
-
-def _duty_accounts(
-    commons_id: int, member: int, clause: str, day: date, given: str
-) -> tuple[str, str]:
-    commons.check_member(commons_id=commons_id, member=member)
-    window = queries.duty_season(commons_id=commons_id, day=day)
-    if window is None:
-        raise NoSuchSeason(day=day)
-    owed = queries.duty_account(clause=clause, first=window.first, member=member)
-    return owed, f"{given}:{clause}:{window.first.isoformat()}:{member}"
-
-
-def _contribute(
-    commons_id: int,
-    kind: str,
-    member: int,
-    day: date,
-    facts: Mapping[str, Fact],
-    postings: Sequence[Posting],
-    texts: Mapping[str, str],
-    hand: Hand,
-) -> Receipt:
-    draft = Draft(
-        kind=kind,
-        occurred_at=hand.clock(),
-        day=day,
-        subject=member,
-        facts=facts,
-        postings=tuple(postings),
-        texts=texts,
-    )
-    (receipt,) = _append(commons_id, [draft], hand)
-    return receipt
 
 
 def _append(commons_id: int, drafts: Sequence[Draft], hand: Hand) -> tuple[Receipt, ...]:
@@ -428,16 +299,13 @@ def _append(commons_id: int, drafts: Sequence[Draft], hand: Hand) -> tuple[Recei
     )
 
 
-def _moved(
-    source: str, target: str, *, resource: str, unit: str, amount: int
-) -> tuple[Posting, Posting]:
-    return (
-        Posting(account=source, resource=resource, unit=unit, amount=-amount),
-        Posting(account=target, resource=resource, unit=unit, amount=amount),
-    )
+def _check_due(commons_id: int, member: int, kind: str, amount: int) -> None:
+    _check_above_zero(amount)
+    if kind not in queries.DUE_KINDS:
+        raise UnknownDue(found=kind, accepted=", ".join(queries.DUE_KINDS))
+    commons.check_member(commons_id=commons_id, member=member)
 
 
-def _above_zero(amount: int) -> int:
-    if amount <= 0:
+def _check_above_zero(amount: int) -> None:
+    if type(amount) is not int or amount <= 0:
         raise NothingGiven(found=amount)
-    return amount

@@ -17,7 +17,9 @@ from ledger.seasons import queries as seasons
 WITHDRAWAL = "withdrawal"
 WORK = "work_given"
 MONEY_INSTEAD = "money_given_instead"
+ASSESSMENT = "duties_assessed"
 DUE_CHARGED = "due_charged"
+DUE_PAID = "due_paid"
 GIVEN_BACK = "given_back"
 
 # Dues are kept apart by what they are for: a fine is never mixed with what is given back.
@@ -29,7 +31,7 @@ class UnknownSlip(LedgerError):
     """No entry that stands carries this slip number."""
 
     code: ClassVar[str] = "movements.unknown_slip"
-    message: ClassVar[str] = "Found no standing entry for the slip {found!r}."
+    message: ClassVar[str] = "Found the slip {found!r}; accepted are slips that stand recorded."
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -65,9 +67,24 @@ def duty_account(*, clause: str, first: date, member: int) -> str:
     return f"duty:{clause}:{first.isoformat()}:{member}"
 
 
+def worked_account(*, clause: str, first: date, member: int) -> str:
+    """Name the account of the minutes that a member worked."""
+    return f"duty_worked:{clause}:{first.isoformat()}:{member}"
+
+
+def bought_account(*, clause: str, first: date, member: int) -> str:
+    """Name the account of the minutes that a member gave money for."""
+    return f"duty_bought:{clause}:{first.isoformat()}:{member}"
+
+
 def due_account(*, kind: str, member: int) -> str:
     """Name the account of the money that a member owes."""
     return f"due:{kind}:{member}"
+
+
+def paid_account(*, kind: str, member: int) -> str:
+    """Name the account of the money that a member has paid."""
+    return f"paid:{kind}:{member}"
 
 
 def rows(
