@@ -80,6 +80,9 @@ def database(address: str) -> dict[str, Any]:
             "PASSWORD": unquote(parts.password or ""),
             "HOST": parts.hostname,
             "PORT": str(parts.port or 5432),
+            # Django switches psycopg's prepared statements off; a journal posts the same few
+            # statements all day. A pooler in front must know them (PgBouncer does from 1.21).
+            "OPTIONS": {"prepare_threshold": 5},
         }
     raise ImproperlyConfigured(
         f"STINTBOOK_DATABASE has the form {parts.scheme}://…; accepted are sqlite:///PATH and"

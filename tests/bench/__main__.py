@@ -13,6 +13,8 @@ BENCHES = (
     "posting",
     "posting_batch",
     "judging",
+    "projection",
+    "projection_bent",
 )
 SIZES = ("small", "full")
 

@@ -4,8 +4,8 @@ from tests.bench import posting_sides, rounds
 
 NAME = "posting_batch"
 _BATCHES_A_SLICE = {"small": 1, "full": 4}
-# Below the least median of a dozen runs on two shared cores.
-_BOUND = {"postgresql": 0.4, "sqlite": 0.35}
+# Below the least median of a few runs on two shared cores.
+_BOUND = {"postgresql": 0.5, "sqlite": 0.35}
 
 
 def measure(*, size: str) -> rounds.Measurement:
