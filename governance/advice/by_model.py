@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass
 from fractions import Fraction
+from typing import ClassVar
 
 import numpy as np
 
@@ -18,6 +19,7 @@ from governance.advice.records import (
 )
 from governance.advice.request import Request
 from governance.bylaws import clauses
+from governance.errors import StintbookError
 from governance.quantities import Rounding
 from governance.regeneration import draws, fitting, likelihood, projection, prospects, rules
 from governance.regeneration.growth import FloatArray
@@ -30,6 +32,16 @@ SEASONS = 20
 PROCESS_SD = 0.10
 INTERVAL = 0.95
 _EDGES = (0.5 - INTERVAL / 2, 0.5 + INTERVAL / 2)
+
+
+class CatchMissing(StintbookError):
+    """A year of the series has no catch on record, which is not the same as a catch of nought."""
+
+    code: ClassVar[str] = "advice.catch_missing"
+    message: ClassVar[str] = (
+        "Found no catch for {years}; accepted is a catch for every year from {first} to {last},"
+        " nought where nothing was taken."
+    )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -61,8 +73,10 @@ class _Stock:
 def series_of(request: Request) -> Series:
     """Return the catches and the index of the years before the season, in the unit for reading.
 
-    A year without a catch is a year of no catch; a year without an index has none.
+    A year without an index has none; a year without a catch on record is refused, for a catch
+    that nobody wrote down would make the stock look better than it is.
 
+    :raises CatchMissing: if a year from the first to the last has none.
     :raises governance.regeneration.series.TooFewYears: and the like, if no fit can rest on them.
     """
     units = request.units
@@ -78,10 +92,13 @@ def series_of(request: Request) -> Series:
         exact = quantities.converted(Fraction(amount), from_unit=units.base, to_unit=units.unit)
         catches[year] = float(exact)
     known = [year for year in {*catches, *index} if year < request.year]
-    years = tuple(range(min(known, default=request.year), max(known, default=request.year) + 1))
+    years = tuple(range(min(known), max(known) + 1)) if known else ()
+    missing = [str(year) for year in years if year not in catches]
+    if missing:
+        raise CatchMissing(years=", ".join(missing), first=years[0], last=years[-1])
     return Series(
         years=years,
-        catches=tuple(catches.get(year, 0.0) for year in years),
+        catches=tuple(catches[year] for year in years),
         index=tuple(index.get(year) for year in years),
     )
 
@@ -91,6 +108,7 @@ def advise(
 ) -> Advice:
     """Return the advice: fit, reference points, rule, bounds, risk table, history and reasons.
 
+    :raises CatchMissing: if a year of the series has no catch on record.
     :raises governance.regeneration.series.TooFewYears: and the like, if no fit can rest on the
         observations.
     """
@@ -105,6 +123,7 @@ def advise(
         units=request.units,
     )
     series = stock.fit.series
+    risk = _risk(stock, kept.amount)
     return Advice(
         resource=request.units.resource,
         clause=request.clause.head.id,
@@ -121,10 +140,10 @@ def advise(
         before_bounds=by_rule,
         proposed=kept.amount,
         bounds=kept.words,
-        risk=_risk(stock, kept.amount),
+        risk=risk,
         survey_risk=None,
         stock=_history(stock, kept.amount),
-        reasons=_reasons(stock, by_rule, kept),
+        reasons=_reasons(stock, by_rule, kept, risk),
         cautions=_cautions(stock),
         runs=DRAWS,
         seed=request.seed,
@@ -161,15 +180,13 @@ def _below_exception(stock: _Stock) -> bool:
     return reference is not None and stock.fit.biomass[-1] < stock.levels.biomass(reference)
 
 
-def _risk_level(stock: _Stock) -> clauses.Reference | None:
+def _risk_level(stock: _Stock) -> clauses.Reference:
     bound = stock.request.clause.risk
     return levels.limit_of(stock.method.rule) if bound is None else bound.below
 
 
-def _risk(stock: _Stock, proposed: int) -> RiskTable | None:
+def _risk(stock: _Stock, proposed: int) -> RiskTable:
     level = _risk_level(stock)
-    if level is None:
-        return None
     request, bound = stock.request, stock.request.clause.risk
     unit_size = quantities.rounded(
         quantities.converted(Fraction(1), from_unit=request.units.unit, to_unit=request.units.base),
@@ -177,18 +194,16 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable | None:
     )
     named = (proposed, request.present)
     amounts = candidates.spread(named=named, unit_size=unit_size)
+    limits = stock.levels.biomass_of(level, stock.plausible.K)
     rows = projection.under_takes(
         ahead=stock.ahead,
         candidates=[stock.read_units(amount) for amount in amounts],
         rule=stock.rule,
-        limit=stock.levels.biomass_of(level, stock.plausible.K),
+        limit=limits,
         order=stock.fit.setting.order,
     )
     under_rule = projection.under_rule(
-        ahead=stock.ahead,
-        rule=stock.rule,
-        limit=stock.levels.biomass_of(level, stock.plausible.K),
-        order=stock.fit.setting.order,
+        ahead=stock.ahead, rule=stock.rule, limit=limits, order=stock.fit.setting.order
     )
     at_most = None if bound is None else float(bound.at_most)
     return RiskTable(
@@ -243,7 +258,7 @@ def _history(stock: _Stock, proposed: int) -> StockHistory:
             if value is not None
         ),
         first_projected=first_ahead,
-        limit=None if limit is None else stock.base_units(stock.levels.biomass(limit)),
+        limit=stock.base_units(stock.levels.biomass(limit)),
         trigger=None if trigger is None else stock.base_units(stock.levels.biomass(trigger)),
         runs=DRAWS,
     )
@@ -340,7 +355,7 @@ def _rule_words(rule: clauses.Rule) -> str:
             return f"Whatever stands above {levels.words(rule.leave)}."
 
 
-def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded) -> tuple[str, ...]:
+def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded, risk: RiskTable) -> tuple[str, ...]:
     units = stock.request.units
     now = stock.fit.biomass[-1]
     said = [
@@ -348,11 +363,26 @@ def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded) -> tuple[str, ..
         f" {now / stock.fit.model.K:.0%} of what there would be without any take.",
         f"The rule gives {quantities.amount_text(by_rule, base=units.base, unit_code=units.unit)}.",
         *(f"The book allows {bound}, so the proposal stops there." for bound in kept.words),
+        *_risk_words(risk),
     ]
     if stock.fit.at_bounds:
         names = " and ".join(stock.fit.at_bounds)
         said.append(f"The search for {names} stopped at its bounds: the data do not hold it.")
     return tuple(said)
+
+
+def _risk_words(risk: RiskTable) -> tuple[str, ...]:
+    """Return what the board has to know where the proposal passes the risk that it accepts."""
+    if not any(row.breaks and row.label == "proposed" for row in risk.rows):
+        return ()
+    assert risk.at_most is not None, "only a bound is passed"
+    chance = next(row.chance_below for row in risk.rows if row.label == "proposed")
+    return (
+        f"Taken every season, whatever comes, the proposal would bring the stock below"
+        f" {risk.limit_words} at some time in {risk.horizon_years} seasons with a chance of"
+        f" {chance:.0%}; the book accepts {risk.at_most:.0%}. Where the rule sets the take anew"
+        f" each season, the chance is {risk.under_rule:.0%}.",
+    )
 
 
 def _cautions(stock: _Stock) -> tuple[str, ...]:

@@ -12,14 +12,15 @@ from governance.regeneration import survey
 
 
 def last_survey(request: Request) -> tuple[facts.Observation, ...]:
-    """Return the surveys of the last surveyed year before the season, one for each zone.
+    """Return the surveys of the last surveyed year, one for each zone.
 
-    Where a zone was surveyed twice in that year, the later entry stands.
+    A survey of the season's own year counts, for the advice is made before the season. Where a
+    zone was surveyed twice in that year, the later entry stands.
     """
     found = [
         reading
         for reading in request.observations
-        if reading.kind == "survey" and reading.year < request.year
+        if reading.kind == "survey" and reading.year <= request.year
     ]
     year = max((reading.year for reading in found), default=None)
     by_zone = {reading.zone: reading for reading in found if reading.year == year}

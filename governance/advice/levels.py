@@ -104,7 +104,7 @@ def words(reference: clauses.Reference) -> str:
     return f"{decimal_text(reference.multiple)} {reference.of}"
 
 
-def limit_of(rule: clauses.Rule) -> clauses.Reference | None:
+def limit_of(rule: clauses.Rule) -> clauses.Reference:
     """Return the level at or below which a rule allows nothing."""
     match rule:
         case clauses.HockeyStick():

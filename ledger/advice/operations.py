@@ -46,10 +46,12 @@ def advise(*, commons_id: int, season: str, hand: Hand) -> Advice:
         units=book.units_of(opened.resource),
         season=season,
         year=first.year,
-        observations=fieldwork.observations(commons_id=commons_id, resource=opened.resource),
-        catches=queries.takes_by_year(commons_id=commons_id, resource=opened.resource),
+        observations=fieldwork.observations(
+            commons_id=commons_id, resource=opened.resource, up_to=size
+        ),
+        catches=queries.takes_by_year(commons_id=commons_id, resource=opened.resource, up_to=size),
         present=queries.present_allowable(commons_id=commons_id, before=opened),
-        zones=queries.open_zones(commons_id=commons_id, season=opened),
+        zones=queries.open_zones(commons_id=commons_id, season=opened, up_to=size),
         seed=seed,
         made_on=commons_queries.commons(commons_id=commons_id).day_of(hand.clock()),
     )

@@ -39,15 +39,19 @@ def latest(*, commons_id: int, season: str) -> AdviceRecord | None:
     )
 
 
-def takes_by_year(*, commons_id: int, resource: str) -> Mapping[int, int]:
-    """Return what the seasons of a resource took, in base units, by the year of their first day."""
+def takes_by_year(*, commons_id: int, resource: str, up_to: int) -> Mapping[int, int]:
+    """Return what the seasons of a resource took, in base units, by the year of their first day.
+
+    As known up to an entry number. A closed season without a take counts as nought; an open one
+    without a take says nothing yet.
+    """
     totals: dict[int, int] = {}
     for season in seasons.seasons(commons_id=commons_id).values():
         if season.resource != resource:
             continue
-        columns_of = movements.withdrawals(commons_id=commons_id, during=season.during)
+        columns_of = movements.withdrawals(commons_id=commons_id, during=season.during, up_to=up_to)
         taken = next(each for each in columns_of if each.resource == resource)
-        if len(taken):
+        if len(taken) or season.closed:
             year = season.during.first.year
             totals[year] = totals.get(year, 0) + int(np.sum(taken.amount))
     return totals
@@ -67,8 +71,11 @@ def present_allowable(*, commons_id: int, before: seasons.SeasonRecord) -> int:
     return 0
 
 
-def open_zones(*, commons_id: int, season: seasons.SeasonRecord) -> frozenset[str]:
-    """Return the zones of a season's resource that no order closes on its first day."""
+def open_zones(*, commons_id: int, season: seasons.SeasonRecord, up_to: int) -> frozenset[str]:
+    """Return the zones of a season's resource that no order closes on its first day.
+
+    As known up to an entry number.
+    """
     mine = {
         zone.code
         for zone in commons.zones(commons_id=commons_id).values()
@@ -76,7 +83,7 @@ def open_zones(*, commons_id: int, season: seasons.SeasonRecord) -> frozenset[st
     }
     closed = {
         zone
-        for order in commons.orders(commons_id=commons_id)
+        for order in commons.orders(commons_id=commons_id, up_to=up_to)
         if order.resource == season.resource and order.during.holds(season.during.first)
         for zone in order.zones
     }
