@@ -305,9 +305,10 @@ def _delivery(handed: Handed) -> Delivery:
 
 def _with_step(commons_id: int, case: queries.CaseRecord, event: Event) -> Event:
     """Return a notice or a decision with the step that the ladder comes to."""
-    due = queries.step_due(commons_id=commons_id, case=case, decided_on=event.on)
     if event.move is Move.TELL:
-        return replace(event, proposes_warning=isinstance(due.step, clauses.Warning))
+        foreseen = queries.step_foreseen(commons_id=commons_id, case=case, told_on=event.on)
+        return replace(event, proposes_warning=isinstance(foreseen.step, clauses.Warning))
+    due = queries.step_due(commons_id=commons_id, case=case, decided_on=event.on)
     kept = _within_notice(commons_id, case, due)
     return replace(event, step=kept.index, amount_minor=_amount(case, kept))
 

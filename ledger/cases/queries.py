@@ -10,7 +10,7 @@ from typing import ClassVar, assert_never
 from governance.bylaws import clauses
 from governance.compliance.findings import SubjectKind
 from governance.sanctions import ladder, record
-from governance.sanctions.moves import Move
+from governance.sanctions.moves import Move, State
 from ledger.bylaws import queries as bylaws
 from ledger.cases import columns, models
 from ledger.commons import queries as commons
@@ -20,6 +20,15 @@ from ledger.judgement import queries as judgement
 
 # After these moves nothing follows.
 ENDING = (Move.SET_ASIDE, Move.OVERTURN, Move.COMPLETE)
+# From these states a case may still come to stand, though it is not final.
+_MAY_BECOME_FINAL = (
+    State.TOLD,
+    State.ANSWERED,
+    State.UNANSWERED,
+    State.DECIDED,
+    State.APPEAL_OPEN,
+    State.UNDER_APPEAL,
+)
 
 
 class UnknownCase(LedgerError):
@@ -139,13 +148,30 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
 
     An earlier case whose finding was withdrawn since does not count.
     """
+    return _step(commons_id, case, day=decided_on, may_become_final=False)
+
+
+def step_foreseen(*, commons_id: int, case: CaseRecord, told_on: date) -> ladder.StepDue:
+    """Return the highest step that a decision may come to after a notice on a day.
+
+    An earlier case that is still open may become final before the decision, so it counts here: the
+    member hears of the most that may follow, and has the time to answer that goes with it.
+    """
+    return _step(commons_id, case, day=told_on, may_become_final=True)
+
+
+def _step(
+    commons_id: int, case: CaseRecord, *, day: date, may_become_final: bool
+) -> ladder.StepDue:
     about = judgement.numbers_about(commons_id=commons_id, members=case.so_far.subjects)
     earlier = [
         ladder.EarlierAct(
             case=other.number,
             act_on=other.finding.finding.key.window.first,
             told_on=other.so_far.told_on,
-            final_on=other.so_far.final_on,
+            final_on=day
+            if may_become_final and other.so_far.state in _MAY_BECOME_FINAL
+            else other.so_far.final_on,
         )
         for other in cases(commons_id=commons_id, ladder=case.ladder, findings=about)
         if other.number != case.number
@@ -156,7 +182,7 @@ def step_due(*, commons_id: int, case: CaseRecord, decided_on: date) -> ladder.S
         ladder=ladder_of(commons_id=commons_id, case=case),
         act_on=case.finding.finding.key.window.first,
         earlier=earlier,
-        decided_on=decided_on,
+        decided_on=day,
     )
 
 
