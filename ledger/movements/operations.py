@@ -293,6 +293,50 @@ def give_back(
     )
 
 
+@transactions.required
+def undo_give_back(*, commons_id: int, number: int, reason: str, hand: Hand) -> Receipt:
+    """Return to a member's right what an entry gave back for a case that no longer stands.
+
+    The entry is reversed; but where its season was closed since, the accounts of that stay as they
+    were reported, and the amount goes to the member's next season instead.
+
+    :raises ledger.journal.operations.AlreadyReversed: if the entry was reversed before.
+    """
+    entry = journal_queries.entry(commons_id=commons_id, number=number)
+    assert entry.subject is not None, "a member gives back"
+    opened = seasons.season(commons_id=commons_id, code=entry.facts["season"])
+    left = seasons.left_account(season=opened.code, member=entry.subject)
+    if not opened.closed or all(posting.account != left for posting in entry.postings):
+        now = hand.clock()
+        return journal.reverse(
+            commons_id=commons_id,
+            number=number,
+            reason=reason,
+            by=hand.by,
+            occurred_at=now,
+            day=commons_queries.commons(commons_id=commons_id).day_of(now),
+            clock=hand.clock,
+            chance=hand.chance,
+        )
+    resource = commons_queries.resource(commons_id=commons_id, code=opened.resource)
+    amount = entry.facts["amount"]
+    return commons.enter(
+        commons_id=commons_id,
+        kind="give_back_undone",
+        facts={"entry": number, "amount": amount},
+        texts={"reason": reason},
+        subject=entry.subject,
+        postings=writing.moved(
+            seasons.source_account(resource=resource.code),
+            seasons.carried_account(resource=resource.code, member=entry.subject),
+            resource=resource.code,
+            unit=resource.base,
+            amount=amount,
+        ),
+        hand=hand,
+    )
+
+
 def _append(commons_id: int, drafts: Sequence[Draft], hand: Hand) -> tuple[Receipt, ...]:
     return journal.append(
         commons_id=commons_id, drafts=drafts, by=hand.by, clock=hand.clock, chance=hand.chance
