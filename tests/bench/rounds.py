@@ -93,7 +93,8 @@ def as_table(found: list[Measurement]) -> str:
         for one in found
     ]
     widths = [max(len(line[at]) for line in lines) for at in range(len(head))]
-    return "\n".join(
+    table = "\n".join(
         "  ".join(cell.ljust(width) for cell, width in zip(line, widths, strict=True)).rstrip()
         for line in lines
     )
+    return f"{table}\nratio: the program's speed over the baseline's; it holds from the bound up."
