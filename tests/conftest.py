@@ -9,7 +9,6 @@ drops it.
 """
 
 import os
-import shutil
 from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import UTC, datetime, timedelta
@@ -18,7 +17,6 @@ from typing import Any
 
 import hypothesis
 import pytest
-from django.db import connections
 from django.test.utils import setup_databases, teardown_databases
 
 from ledger.foundation.clocks import Chance, seeded_chance
@@ -123,24 +121,12 @@ def committing_db(
 
     Sealed rows refuse the flush by which Django would empty a database after such a test.
     """
-    with django_db_blocker.unblock():
-        connections.close_all()
-        chosen = connections["default"].settings_dict
-        template = chosen["NAME"]
-        copy = str(tmp_path / "committing.sqlite3")
-        if _on() == "postgresql":
-            copy = databases.new_name()
-            databases.create(copy, template=template)
-        else:
-            shutil.copy(template, copy)
-        chosen["NAME"] = copy
-        try:
-            yield CommittingDatabase(address=_address(copy))
-        finally:
-            connections.close_all()
-            chosen["NAME"] = template
-            if _on() == "postgresql":
-                databases.drop(copy)
+    with (
+        django_db_blocker.unblock(),
+        databases.copied(tmp_path) as copy,
+        databases.led_to(copy),
+    ):
+        yield CommittingDatabase(address=_address(copy))
 
 
 @pytest.fixture

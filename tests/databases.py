@@ -1,7 +1,11 @@
 """Databases for tests and benches: made for one run on a server that the environment names."""
 
 import os
+import shutil
 import uuid
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
 from urllib.parse import urlsplit
 
 import psycopg
@@ -47,6 +51,40 @@ def point_django(address: str, *, test_name: str | None = None) -> None:
     standing.clear()
     standing.update(wanted)
     connections.configure_settings(connections.settings)
+
+
+@contextmanager
+def copied(place: Path) -> Iterator[str]:
+    """Make a copy of the database that Django leads to, and drop it afterwards.
+
+    :param place: a folder, for where the copy is a file.
+    """
+    connections.close_all()
+    original = connections["default"].settings_dict["NAME"]
+    if connections["default"].vendor == "sqlite":
+        # The folder is the caller's, and goes with it.
+        yield str(shutil.copy(original, place / "copy.sqlite3"))
+        return
+    name = new_name()
+    create(name, template=original)
+    try:
+        yield name
+    finally:
+        drop(name)
+
+
+@contextmanager
+def led_to(name: str) -> Iterator[None]:
+    """Have Django lead to another database of the same server, or to another file, for a while."""
+    chosen = connections["default"].settings_dict
+    original = chosen["NAME"]
+    connections.close_all()
+    chosen["NAME"] = name
+    try:
+        yield
+    finally:
+        connections.close_all()
+        chosen["NAME"] = original
 
 
 def _at_server(statement: str, *names: str) -> None:
