@@ -8,11 +8,14 @@ from ledger.foundation.appendonly import AppendOnlyModel
 class Commons(models.Model):
     """An association that keeps a book; ``is_demo`` marks one made by the demo alone."""
 
-    slug = models.SlugField(max_length=60, unique=True)
+    slug = models.SlugField(max_length=60)
     name = models.CharField(max_length=200)
     zone = models.CharField(max_length=60)
     money = models.CharField(max_length=3)
     is_demo = models.BooleanField(default=False)
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["slug"], name="commons_slug_once")]
 
 
 class Resource(models.Model):

@@ -24,17 +24,17 @@ def book_text(
     :param instead: what follows the length of a day in the duty of work; an empty text makes a
         duty that money cannot stand for.
     """
-    return _TEXT.format(
+    text = _TEXT.format(
         edition=edition,
         first=first.isoformat(),
         adopted_on=ADOPTED_ON.isoformat(),
         zone=zone,
-        money=money,
         base=base,
         approvals=approvals,
         instead=instead,
         daily_clams=daily_clams,
     )
+    return text.replace(" EUR", f" {money}")
 
 
 _TEXT = """\
@@ -43,7 +43,7 @@ edition: {edition}
 adopted: {{by: assembly, on: {adopted_on}, votes: {{for: 9, against: 1, abstained: 2}}}}
 in_force: {{from: {first}}}
 zone: {zone}
-money: {money}
+money: EUR
 resources:
   mullet: {{unit: kg, base: {base}}}
   clams: {{unit: kg, base: {base}}}
