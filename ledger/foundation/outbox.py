@@ -5,7 +5,8 @@ from dataclasses import dataclass
 from datetime import datetime
 from typing import Any, ClassVar
 
-from django.db.models import F
+from django.db import connection
+from django.db.models import F, QuerySet
 
 from ledger.foundation import transactions
 from ledger.foundation.clocks import Clock
@@ -58,31 +59,20 @@ def enqueue(
 
 def due(*, at: datetime, commons_id: int | None = None, limit: int) -> list[DueJob]:
     """Return up to so many open jobs due by an instant, the longest due first."""
-    jobs = Job.objects.filter(done_at__isnull=True, due_at__lte=at)
-    if commons_id is not None:
-        jobs = jobs.filter(commons_id=commons_id)
-    return [
-        DueJob(
-            id=job.pk,
-            commons_id=job.commons_id,
-            kind=job.kind,
-            key=job.key,
-            due_at=job.due_at,
-            payload=job.payload,
-            attempts=job.attempts,
-        )
-        for job in jobs.order_by("due_at", "id")[:limit]
-    ]
+    return [_due_job(job) for job in _open_by(at, commons_id)[:limit]]
 
 
 @transactions.required
-def claim(*, job_id: int) -> None:
-    """Keep an open job from every other worker until the transaction ends.
+def claim(*, at: datetime, commons_id: int | None = None) -> DueJob | None:
+    """Return the job that is longest due and keep it from other workers to the transaction's end.
 
-    :raises JobNotOpen: if another worker has done it meanwhile.
+    None means that nothing is due but what others have in hand.
     """
-    if Job.objects.select_for_update().filter(pk=job_id, done_at__isnull=True).first() is None:
-        raise JobNotOpen(job_id=job_id)
+    free = _open_by(at, commons_id).select_for_update(
+        skip_locked=connection.features.has_select_for_update_skip_locked
+    )
+    job = free.first()
+    return None if job is None else _due_job(job)
 
 
 @transactions.required
@@ -109,3 +99,20 @@ def mark_failed(*, job_id: int, error: str, again_at: datetime) -> None:
     )
     if not noted:
         raise JobNotOpen(job_id=job_id)
+
+
+def _open_by(at: datetime, commons_id: int | None) -> QuerySet[Job]:
+    jobs = Job.objects.filter(done_at__isnull=True, due_at__lte=at).order_by("due_at", "id")
+    return jobs if commons_id is None else jobs.filter(commons_id=commons_id)
+
+
+def _due_job(job: Job) -> DueJob:
+    return DueJob(
+        id=job.pk,
+        commons_id=job.commons_id,
+        kind=job.kind,
+        key=job.key,
+        due_at=job.due_at,
+        payload=job.payload,
+        attempts=job.attempts,
+    )

@@ -15,7 +15,6 @@ from ledger.tasks import handlers
 
 logger = logging.getLogger(__name__)
 
-AT_ONCE = 100
 # A job that fails rings again after so many hours for each time it failed.
 PATIENCE = timedelta(hours=1)
 
@@ -32,24 +31,29 @@ class Drained:
 def drain(*, clock: Clock, chance: Chance, commons_id: int | None = None) -> Iterator[Drained]:
     """Do the work that is due now, the longest due first, until none is left.
 
-    Each job's effect commits together with its mark, so it happens once. A job that fails leaves
-    nothing behind and rings again later.
+    Each job's effect commits together with its mark, so it happens once; what another worker has
+    in hand is left to it. A job that fails leaves nothing behind and rings again later.
     """
-    while jobs := outbox.due(at=clock(), commons_id=commons_id, limit=AT_ONCE):
-        for job in jobs:
-            yield _done(job, clock=clock, chance=chance)
+    while outbox.due(at=clock(), commons_id=commons_id, limit=1):
+        done = _next(clock=clock, chance=chance, commons_id=commons_id)
+        if done is None:
+            return
+        yield done
 
 
-def _done(job: DueJob, *, clock: Clock, chance: Chance) -> Drained:
+def _next(*, clock: Clock, chance: Chance, commons_id: int | None) -> Drained | None:
     hand = Hand(by=THE_BOOK, clock=clock, chance=chance)
+    job: DueJob | None = None
     try:
         with transaction.atomic():
-            outbox.claim(job_id=job.id)
+            job = outbox.claim(at=clock(), commons_id=commons_id)
+            if job is None:
+                return None
             outcome = handlers.do(job=job, hand=hand)
             outbox.mark_done(job_id=job.id, outcome=outcome, at=clock())
-    except outbox.JobNotOpen:
-        return Drained(job=job, outcome="done by another", failed=False)
     except Exception as error:
+        if job is None:
+            raise
         logger.exception("job %s of kind %s failed", job.id, job.kind)
         return _failed(job, f"{type(error).__name__}: {error}", clock=clock)
     return Drained(job=job, outcome=outcome, failed=False)
