@@ -184,7 +184,8 @@ def _note(commons_id: int, finding: judgement.FindingRecord, hand: Hand) -> int:
         on=commons_queries.commons(commons_id=commons_id).day_of(hand.clock()),
         subjects=queries.concerned(commons_id=commons_id, finding=finding),
     )
-    procedure.advance(case=None, event=event, procedure=_procedure(commons_id, event.on))
+    rules = _procedure(commons_id, event.on)
+    procedure.advance(case=None, event=event, procedure=rules)
     number = models.Case.objects.filter(commons_id=commons_id).count() + 1
     models.Case.objects.create(
         commons_id=commons_id, number=number, finding=finding.number, ladder=ladder_id
@@ -195,6 +196,7 @@ def _note(commons_id: int, finding: judgement.FindingRecord, hand: Hand) -> int:
         place=1,
         event=event,
         resting=finding,
+        rules=rules,
         effects=(),
         hand=hand,
     )
@@ -259,6 +261,7 @@ def _advance(
         place=place,
         event=event,
         resting=_resting(before, event.move),
+        rules=rules,
         effects=effects,
         hand=hand,
     )

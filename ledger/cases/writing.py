@@ -31,12 +31,14 @@ def append_event(
     place: int,
     event: Event,
     resting: judgement.FindingRecord,
+    rules: clauses.Procedure,
     effects: tuple[int, ...],
     hand: Hand,
 ) -> None:
-    """Append the entry of a move, and the row that names it.
+    """Append the entry of a move, and the row that names it; a decision's names the way to appeal.
 
     :param resting: the version of the finding that the case rests on from this move on.
+    :param rules: the clause on the procedure that the move was made under.
     """
     details = columns.details(event)
     key = resting.finding.key
@@ -52,6 +54,12 @@ def append_event(
         "effects": list(effects),
         **details,
     }
+    if event.move is Move.DECIDE:
+        facts["appeal"] = {
+            "clause": rules.head.id,
+            "to": rules.appeal_to,
+            "days": rules.appeal_days,
+        }
     receipt = commons.enter(
         commons_id=commons_id,
         kind=f"case_{event.move.value}",
