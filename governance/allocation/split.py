@@ -32,6 +32,9 @@ def split_allowable(
     :raises apportionment.NegativeTotal: if the allowable lies below 0.
     :raises apportionment.NobodyToHold: if something is to be allotted and nobody has a weight.
     """
+    if allowable < 0:
+        # Checked before the reserve: of -1 all would be reserve, and nought left to refuse.
+        raise apportionment.NegativeTotal(total=allowable)
     reserve = quantities.rounded(allowable * clause.reserve, quantities.Rounding.DOWN)
     held = bases.weights(clause=clause, roster=roster, day=day)
     parts = apportionment.apportion(total=allowable - reserve, weights=held, how=clause.rounding)

@@ -127,13 +127,23 @@ def people(*, hand: Hand, slug: str = "reed-bank") -> int:
 
 
 @transaction.atomic
+def adopt_book(*, commons_id: int, hand: Hand, **changes: Any) -> Receipt:
+    """Adopt an edition, and return its receipt.
+
+    :param changes: what the edition says otherwise, see ``book_text``.
+    """
+    text = book_text(**changes)
+    return bylaws.adopt(commons_id=commons_id, text=text, name="book.yaml", hand=hand)
+
+
+@transaction.atomic
 def governed(*, hand: Hand, slug: str = "reed-bank", **changes: Any) -> int:
     """Found a commons with members and an edition in force, and return its id.
 
     :param changes: what the edition says otherwise, see ``book_text``.
     """
     commons_id = people(hand=hand, slug=slug)
-    bylaws.adopt(commons_id=commons_id, text=book_text(**changes), name="book.yaml", hand=hand)
+    adopt_book(commons_id=commons_id, hand=hand, **changes)
     return commons_id
 
 

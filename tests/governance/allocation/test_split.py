@@ -50,14 +50,15 @@ def test_the_clause_chooses_the_rounding(
     assert dict(of(6, people.allocation(rounding=rounding)).parts) == expected
 
 
-def test_an_allowable_below_nothing_is_refused() -> None:
-    with pytest.raises(apportionment.NegativeTotal):
-        of(-1, people.allocation())
-
-
 def test_nobody_in_the_class_is_refused() -> None:
     with pytest.raises(apportionment.NobodyToHold):
         of(10, people.allocation(who="guest"))
+
+
+@pytest.mark.parametrize("reserve", [Fraction(0), Fraction(2, 100), Fraction(1)])
+def test_less_than_nothing_is_refused_whatever_the_reserve(reserve: Fraction) -> None:
+    with pytest.raises(apportionment.NegativeTotal, match="total of -1;"):
+        of(-1, people.allocation(reserve=reserve))
 
 
 def test_a_full_reserve_needs_nobody() -> None:
