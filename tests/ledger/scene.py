@@ -2,11 +2,12 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from datetime import date, datetime, timedelta
+from datetime import date, datetime
 
 from django.db import transaction
 
 from governance import periods
+from ledger.bylaws import operations as bylaws
 from ledger.cases import operations as cases
 from ledger.cases import queries as cases_queries
 from ledger.commons import operations as commons
@@ -123,9 +124,10 @@ def opened(*, clock: TickingClock, chance: Chance) -> Scene:
     return Scene(commons_id=commons_id, clock=clock, chance=chance)
 
 
-def next_day(day: date, *, days: int = 1) -> date:
-    """Return a day so many days later."""
-    return day + timedelta(days=days)
+def adopts(bay: Scene, text: str) -> None:
+    """Adopt the text of an edition."""
+    with transaction.atomic():
+        bylaws.adopt(commons_id=bay.commons_id, text=text, name="book.yaml", hand=bay.hand)
 
 
 def handed(on: date, *, proved: bool = True, means: str = "by hand") -> cases.Handed:
