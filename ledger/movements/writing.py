@@ -240,12 +240,7 @@ def minutes_bought(*, commons_id: int, clause: str, day: date, amount: int) -> i
     :raises NotPayable: if no duty of this name can be paid off.
     """
     duties = bylaws.work_duties(commons_id=commons_id, day=day)
-    # A day that costs nothing cannot be paid for: no sum says how many days were meant.
-    prices = {
-        duty.head.id: (duty, duty.instead)
-        for duty in duties
-        if duty.instead is not None and duty.instead.money.minor
-    }
+    prices = {duty.head.id: (duty, duty.instead) for duty in duties if duty.instead is not None}
     if clause not in prices:
         raise NotPayable(found=clause, day=day, accepted=", ".join(prices) or "none")
     duty, price = prices[clause]
