@@ -106,9 +106,11 @@ def standings(reported: Reported) -> tuple[figures.StandingRow, ...]:
     for kind in movements.DUE_KINDS:
         for number, due in movements.dues(commons_id=commons_id, kind=kind).items():
             owed[number] += due.owed
+    # A household that counts as one shares its case: each of it has the case open.
     open_cases = Counter(
-        case.finding.finding.key.subject
+        member
         for case in cases.cases(commons_id=commons_id, is_open=True)
+        for member in cases.responsible(case)
     )
     holdings = {season.code: _holdings(commons_id, season) for season in reported.seasons}
     nothing = movements.DutyStanding(assessed=0, worked=0, paid_instead=0, owed=0)

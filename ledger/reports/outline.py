@@ -61,7 +61,8 @@ class Table:
     """A table with a caption; the first cell of a row is its header.
 
     ``groups`` are titles over runs of columns (title, number of columns), or empty. ``empty`` is
-    the sentence that stands in its place where it has no row.
+    the sentence that stands in its place where it has no row. ``looks`` says what shades and frames
+    mean, for renderings that have them.
     """
 
     sheet: Sheet
@@ -71,6 +72,12 @@ class Table:
     empty: str
     groups: tuple[tuple[str, int], ...] = ()
     note: str = ""
+    looks: str = ""
+
+    @property
+    def full_note(self) -> str:
+        """Return the note, with what shades and frames mean."""
+        return " ".join(filter(None, (self.note, self.looks)))
 
     @property
     def headed(self) -> tuple["Column", ...]:

@@ -49,7 +49,7 @@ def _table(table: Table) -> dict[str, Any]:
     return {
         "caption": table.caption,
         "groups": table.groups,
-        "note": table.note,
+        "note": table.full_note,
         "empty": table.empty,
         "headed": [dataclasses.asdict(column) for column in table.headed],
         "rows": [

@@ -10,6 +10,8 @@ from ledger.reports.outline import Cell, Sheet, Table
 
 # Chances from which a cell is a shade darker; the first is where people count 1 in 20.
 _FILL_FROM = (0.025, 0.1, 0.25, 0.5)
+_DARKER = "A darker cell is a greater chance."
+_FRAMED = "A bold frame marks a chance beyond what the book accepts."
 
 
 def proposal(advice: Advice, *, resource: ResourceFigures) -> Table:
@@ -86,6 +88,7 @@ def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
         rows=tuple(_risk(row, resource=resource) for row in rows),
         empty="No candidate was tried.",
         note=_risk_note(advice, resource=resource),
+        looks=_DARKER if table.at_most is None else f"{_FRAMED} {_DARKER}",
     )
 
 
@@ -112,9 +115,9 @@ def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
         note=(
             f"The survey found {found}, with an error of"
             f" {numbers.percent(table.variation)} (coefficient of variation, all grounds together)."
-            " What really stands is taken as lognormal around that. A darker cell is a greater"
-            " chance."
+            " What really stands is taken as lognormal around that."
         ),
+        looks=_DARKER,
     )
 
 
@@ -154,10 +157,7 @@ def _risk_note(advice: Advice, *, resource: ResourceFigures) -> str:
         f" anew each year by the rule, the chance is {numbers.chance(table.under_rule)}."
     ]
     if table.at_most is not None:
-        sentences.append(
-            f"The book accepts a chance of at most {numbers.percent(table.at_most)};"
-            " a bold frame marks a chance beyond it. A darker cell is a greater chance."
-        )
+        sentences.append(f"The book accepts a chance of at most {numbers.percent(table.at_most)}.")
     sentences.append(
         f"Every row was tried on the same {table.runs:,} runs; the counting alone leaves a chance"
         f" uncertain by at most {numbers.tenths(error * 100)} points of a hundred."

@@ -54,7 +54,8 @@ def findings(figures: SeasonFigures) -> str:
     withdrawn = sum(row.withdrawn for row in figures.findings)
     return (
         f"The bylaws and the entries give {many(found, one='finding', more='findings')}:"
-        f" {standing:,} stand and {withdrawn:,} were withdrawn after later entries."
+        f" {standing:,} stand and {withdrawn:,} {'was' if withdrawn == 1 else 'were'} withdrawn"
+        " after later entries."
     )
 
 

@@ -147,8 +147,8 @@ class _Page:
             for column, cell in enumerate(row):
                 self._write_cell(column, cell)
         self._row += 1
-        if table.note:
-            self._sentence(table.note)
+        if table.full_note:
+            self._sentence(table.full_note)
         self._row += 1
 
     def _write_cell(self, column: int, cell: Cell) -> None:

@@ -1,6 +1,5 @@
 """Play the invented season of the Tarrin Bay Fishing Cooperative, and write its report."""
 
-import sys
 from datetime import date
 from pathlib import Path
 from time import monotonic
@@ -11,18 +10,27 @@ from django.core.management.base import BaseCommand, CommandError
 from django.db import connection
 from django.db.migrations.executor import MigrationExecutor
 
+from ledger.cases import queries as cases
 from ledger.commons import queries as commons
 from ledger.foundation.clocks import seeded_chance
+from ledger.journal import queries as journal
 from ledger.management import playing, scenario
 from ledger.management.scenario_cells import ScenarioError
 from ledger.management.stage import Play
-from ledger.reports import collecting, html, pdf, text, xlsx
+from ledger.reports import collecting, html, numbers, pdf, text, xlsx
 from ledger.reports.figures import SeasonFigures, digest
 
 FOLDER = Path(settings.ROOT) / "fixtures" / "tarrin_bay"
 SEED = 20260301
-ACCOUNT = ("summary", "findings", "standing", "resource-*", "next", "cautions")
+ACCOUNT = ("summary", "findings", "standing", "settlement", "resource-*", "next", "cautions")
+REPORTS = ("report.html", "report.pdf", "report.xlsx")
 STEP_DAYS = 14
+INTRODUCTION = """\
+{name}: an invented commons, invented people, invented figures.
+This plays its season of {slips:,} slips and {checks:,} checks by monitors into a new commons of its
+own, {slug}. Slips are entered every evening and judged every night, people deal with
+every case, the season is closed, and the next one is advised on and adopted. It takes about half a
+minute."""
 
 
 class Command(BaseCommand):
@@ -44,16 +52,19 @@ class Command(BaseCommand):
         except ScenarioError as error:
             raise CommandError(str(error)) from error
         self.stdout.write(
-            f"{story.commons.name}: an invented commons, invented people, invented figures.\n"
-            f"Playing {len(story.landings):,} slips, {len(story.inspections)} checks and every case"
-            f" into the demo commons {slug!r}."
+            INTRODUCTION.format(
+                name=story.commons.name,
+                slips=len(story.landings),
+                checks=len(story.inspections),
+                slug=slug,
+            )
         )
         book = (FOLDER / "bylaws.yaml").read_text(encoding="utf-8")
         play = playing.begin(scenario=story, book=book, slug=slug, chance=seeded_chance(SEED))
         for place, day in enumerate(playing.play_on(play=play)):
             if place % STEP_DAYS == 0:
                 self._progress(play, day)
-        self._progress(play, play.clock.now.date())
+        self._progress(play, play.day_of(play.clock.now))
         first = story.commons.seasons[0].during.first
         figures = collecting.season_figures(
             commons_id=play.commons_id, first=first, made_at=play.clock.now
@@ -61,15 +72,27 @@ class Command(BaseCommand):
         for line in text.season_text(figures, keys=ACCOUNT):
             self.stdout.write(line)
         folder = _write(figures, slug)
-        self.stdout.write("")
-        self.stdout.write(figures.proof)
-        self.stdout.write(f"figures {digest(figures)}")
-        self.stdout.write(f"The season report is in {folder}: report.html, report.pdf, report.xlsx")
-        self.stdout.write(f"Done in {monotonic() - started:.0f} seconds.")
+        self.stdout.write(
+            f"\nThe head of the journal, and the digest of the figures\n"
+            f"{'=' * 54}\n"
+            f"{figures.proof}\n"
+            f"figures {digest(figures)}\n"
+            "The next run of this demo founds another commons and comes to the same two lines.\n"
+            "\n"
+            f"The season report, as a page, for print and as a workbook, is in\n"
+            f"  {folder}\n"
+            f"    {'  '.join(REPORTS)}\n"
+            f"Done in {monotonic() - started:.0f} seconds."
+        )
 
     def _progress(self, play: Play, day: date) -> None:
-        self.stderr.write(f"  {day}  {len(play.entered):>5,} slips entered", ending="\n")
-        sys.stderr.flush()
+        size = journal.head(commons_id=play.commons_id).size
+        still_open = len(cases.cases(commons_id=play.commons_id, is_open=True))
+        self.stderr.write(
+            f"  {day}  {len(play.entered):>5,} slips in  {size:>5,} entries"
+            f"  {numbers.many(still_open, one='case open', more='cases open'):>13}"
+        )
+        self.stderr.flush()
 
 
 def _check_tables() -> None:
@@ -88,7 +111,8 @@ def _free_slug() -> str:
 def _write(figures: SeasonFigures, slug: str) -> Path:
     folder = Path(settings.OUTPUT) / slug
     folder.mkdir(parents=True, exist_ok=True)
-    (folder / "report.html").write_text(html.season_html(figures), encoding="utf-8")
-    (folder / "report.pdf").write_bytes(pdf.season_pdf(figures))
-    (folder / "report.xlsx").write_bytes(xlsx.season_xlsx(figures))
+    page, document, workbook = (folder / name for name in REPORTS)
+    page.write_text(html.season_html(figures), encoding="utf-8")
+    document.write_bytes(pdf.season_pdf(figures))
+    workbook.write_bytes(xlsx.season_xlsx(figures))
     return folder
