@@ -23,7 +23,8 @@ from ledger.journal.leaves import Posting, Receipt
 from ledger.movements import operations, queries, writing
 from ledger.seasons import operations as seasons
 from ledger.seasons import queries as seasons_queries
-from tests.ledger import builders, checks
+from tests.conftest import CommittingDatabase
+from tests.ledger import builders, checks, waiting
 
 MULLET, CLAMS = "mullet-2026", "clams-2026"
 
@@ -358,6 +359,32 @@ class TestOutsideTheSeason:
             ("taken:clams-2026:1", "clams", "g", 2_000),
         ]
         assert seasons_queries.left(commons_id=commons_id, season=MULLET)[1] == 588_000
+
+
+def test_a_slip_that_waits_for_the_close_is_recorded_after_it(
+    committing_db: CommittingDatabase, hand: Hand
+) -> None:
+    commons_id = builders.opened(hand=hand)
+    waiting.one_after_the_other(
+        first=lambda: _close(commons_id, hand),
+        second=lambda: operations.record_withdrawals(
+            commons_id=commons_id, slips=[builders.slip("A1")], hand=hand
+        ),
+    )
+    assert _balances(commons_id, "taken:") == {"taken:mullet-2026.after-close:1": 10_000}
+
+
+def test_what_is_given_back_waits_for_the_close(
+    committing_db: CommittingDatabase, hand: Hand
+) -> None:
+    commons_id = builders.opened(hand=hand)
+    waiting.one_after_the_other(
+        first=lambda: _close(commons_id, hand),
+        second=lambda: operations.give_back(
+            commons_id=commons_id, member=2, season=MULLET, amount=3_000, case=7, hand=hand
+        ),
+    )
+    assert seasons_queries.carried(commons_id=commons_id, resource="mullet") == {2: -3_000}
 
 
 @pytest.mark.django_db

@@ -23,8 +23,8 @@ from ledger.journal import operations as journal
 from ledger.journal import queries as journal_queries
 from ledger.journal.leaves import Posting
 from ledger.seasons import operations, queries
-from tests.conftest import TickingClock
-from tests.ledger import builders, checks
+from tests.conftest import CommittingDatabase, TickingClock
+from tests.ledger import builders, checks, waiting
 
 MULLET = "mullet-2026"
 
@@ -441,6 +441,36 @@ class TestRecordClose:
         operations.record_close(commons_id=commons_id, season=MULLET, postings=(), hand=hand)
         with checks.refuses(operations.SeasonAlreadyClosed, MULLET, "open"):
             operations.record_close(commons_id=commons_id, season=MULLET, postings=(), hand=hand)
+
+
+def test_of_two_seasons_opened_at_once_one_is_refused(
+    committing_db: CommittingDatabase, hand: Hand
+) -> None:
+    commons_id = builders.governed(hand=hand)
+    with pytest.raises(operations.SeasonsOverlap, match=MULLET):
+        waiting.one_after_the_other(
+            first=lambda: _open(commons_id, hand),
+            second=lambda: _open(commons_id, hand, code="another"),
+        )
+    assert list(queries.seasons(commons_id=commons_id)) == [MULLET]
+
+
+def test_an_allowable_waits_for_what_a_close_carries(
+    committing_db: CommittingDatabase, hand: Hand
+) -> None:
+    commons_id = builders.opened(hand=hand)
+    builders.open_seasons(commons_id=commons_id, hand=hand, during=builders.NEXT_SEASON)
+    waiting.one_after_the_other(
+        first=lambda: operations.record_close(
+            commons_id=commons_id,
+            season=MULLET,
+            postings=(_grams("left:mullet-2026:2", 5_000), _grams("carried:mullet:2", -5_000)),
+            hand=hand,
+        ),
+        second=lambda: _adopt(commons_id, hand, season="mullet-2027"),
+    )
+    assert queries.carried(commons_id=commons_id, resource="mullet") == {2: 0}
+    assert queries.allotments(commons_id=commons_id, season="mullet-2027")[2] == 191_000
 
 
 shares = st.lists(
