@@ -118,13 +118,19 @@ def _limits(
     count: int,
     read: sentences.Reading,
 ) -> facts.Column:
-    """Return each holder's limit in base units: the clause's amount, or the allotment."""
+    """Return each holder's limit in base units: the clause's amount, or the allotment.
+
+    An allotment below 0 is a debt from seasons before, which is settled at the close; as a limit it
+    is nothing, or what was owed already would be fined once more.
+    """
     if clause.more_than is not None:
         whole = quantities.rounded(clause.more_than.in_base(read.base), quantities.Rounding.DOWN)
         return facts.column(np.full(count, whole, dtype=np.int64))
     allotted = laid.facts.allotments
     limits = np.zeros(count, dtype=np.int64)
-    of_member = [allotted.get((clause.resource, each.number), 0) for each in laid.holders.members]
+    of_member = [
+        max(0, allotted.get((clause.resource, each.number), 0)) for each in laid.holders.members
+    ]
     np.add.at(limits, holder_of, np.array(of_member, dtype=np.int64))
     return limits
 

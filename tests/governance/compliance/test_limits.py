@@ -231,6 +231,19 @@ class TestAllotments:
         (one,) = found(self.CLAUSE, scenes.season((Take(entry=1, kg=GRAM),)))
         assert (one.limit, one.breach) == (0, 1)
 
+    def test_a_debt_from_before_is_not_fined_again(self):
+        # Member 1 still owes 100 kg and takes 10: no more than those 10 are beyond the limit.
+        known = scenes.season((Take(entry=1, kg=10),), allotments={("clams", 1): -100_000})
+        (one,) = found(self.CLAUSE, known)
+        assert (one.limit, one.breach, one.overuse) == (0, 10_000, 10_000)
+
+    def test_a_debt_does_not_lower_what_others_of_the_household_may_take(self):
+        clause = scenes.limit(more_than=None, per=Per.SEASON, tolerance=Fraction(0))
+        allotments = {("clams", 1): 20_000, ("clams", 3): -15_000}
+        assert found(clause, scenes.season((Take(entry=1, kg=20),), allotments=allotments)) == ()
+        over = scenes.season((Take(entry=1, kg=21),), allotments=allotments)
+        assert [(one.limit, one.breach) for one in found(clause, over)] == [(20_000, 1_000)]
+
     def test_a_very_large_allotment_keeps_its_exact_ceiling(self):
         # 40,000,000,000,003 g and 33.3333 % are 53,333,320,000,003.999999 g, rounded down; the
         # product with the numerator 333,333 alone would pass 64 bits.

@@ -105,7 +105,7 @@ def seasons(draw: st.DrawFn) -> facts.SeasonFacts:
         allotments=draw(
             st.dictionaries(
                 st.tuples(st.sampled_from(["clams", "mullet"]), st.sampled_from(list(HOUSEHOLDS))),
-                st.sampled_from([0, 20_000, 42_000, 90_000]),
+                st.sampled_from([-30_000, 0, 20_000, 42_000, 90_000]),
             )
         ),
         window=WINDOW,
@@ -322,9 +322,8 @@ class Slow:
                 whose = [holder]
                 if clause.counted_by == "household":
                     whose = [number for number, home in HOUSEHOLDS.items() if home == holder]
-                limit = sum(
-                    self.known.allotments.get((clause.resource, number), 0) for number in whose
-                )
+                known = self.known.allotments
+                limit = sum(max(0, known.get((clause.resource, number), 0)) for number in whose)
             ceiling = int(limit * (1 + clause.tolerance))
             if total > ceiling:
                 key = (clause.head.id, clause.counted_by, holder, clause.resource, first, until)
