@@ -66,7 +66,7 @@ class Need(enum.StrEnum):
     OFFICER = "a case officer with no conflict of interest is named"
     IMPARTIAL = "whoever decides has no conflict of interest"
     NOT_AMONG_THEMSELVES = "the board does not decide on one of its own"
-    DELIVERY = "the attempt at delivery is recorded, on a day since the last move"
+    DELIVERY = "the attempt at delivery is recorded with its means, on a day since the last move"
     PROVED = "the delivery is proved"
     STILL_UNPROVED = "no earlier delivery is proved"
     CONCERNED = "a member who moves the case is concerned by it"

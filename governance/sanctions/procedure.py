@@ -105,7 +105,7 @@ class NotDelivered(MoveRefused):
     code: ClassVar[str] = "procedure.not_delivered"
     message: ClassVar[str] = (
         "{move} is refused: the notice is not delivered; accepted after a proved delivery, or after"
-        " two attempts by different means."
+        " two attempts by different means, a week or more apart."
     )
 
 
@@ -221,7 +221,7 @@ def _check_impartial(member: int | None, *, case: record.CaseSoFar, event: recor
 
 def _check_delivery(*, case: record.CaseSoFar, event: record.Event) -> None:
     # A delivery dated back would eat the days that the member has.
-    if event.delivery is None:
+    if event.delivery is None or not event.delivery.kind_of_means:
         raise PartMissing(move=event.move, needs=moves.Need.DELIVERY)
     if not case.last_on <= event.delivery.on <= event.on:
         raise DeliveryOutOfOrder(

@@ -2,7 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from datetime import date
+from datetime import date, timedelta
 from typing import ClassVar
 
 from governance.errors import StintbookError
@@ -10,6 +10,8 @@ from governance.sanctions import moves
 
 # Whoever acts in any other role is a person, and answers for it by number.
 _NO_PERSON = (moves.Role.BOOK, moves.Role.ASSEMBLY)
+# Two attempts on one trip say only that nobody was at home that week.
+ATTEMPTS_APART = timedelta(days=7)
 
 
 class ActorUnnamed(StintbookError):
@@ -41,6 +43,11 @@ class Delivery:
     on: date
     means: str
     proved: bool
+
+    @property
+    def kind_of_means(self) -> str:
+        """Return the means without regard to capitals and spaces: ``Post`` again is ``post``."""
+        return "".join(self.means.split()).casefold()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,15 +103,19 @@ class CaseSoFar:
         """Return the day that the notice counts as delivered, or None if it does not yet.
 
         A proved delivery counts; without one, the last of at least two attempts by different
-        means. Repeating a means that failed before is no further attempt.
+        means, each a week or more after the one before. Repeating a means that failed before is no
+        further attempt.
         """
         proved = next((each.on for each in self.deliveries if each.proved), None)
         if proved is not None:
             return proved
-        first_by_means: dict[str, date] = {}
+        counted: dict[str, date] = {}
+        last: date | None = None
         for each in self.deliveries:
-            first_by_means.setdefault(each.means, each.on)
-        return max(first_by_means.values()) if len(first_by_means) > 1 else None
+            apart = last is None or each.on - last >= ATTEMPTS_APART
+            if apart and each.kind_of_means not in counted:
+                counted[each.kind_of_means] = last = each.on
+        return last if len(counted) > 1 else None
 
 
 def fold(events: Sequence[Event]) -> CaseSoFar:

@@ -212,6 +212,11 @@ class TestSilence:
         with pytest.raises(procedure.NotDelivered, match="two attempts by different means"):
             self.closed(case, 400)
 
+    def test_an_attempt_says_by_what_means(self) -> None:
+        nameless = acts.tell(10, delivery=acts.delivery(10, " ", proved=False))
+        with pytest.raises(procedure.PartMissing, match="recorded with its means"):
+            acts.walked((acts.note(), acts.check(), nameless))
+
     def test_nothing_is_left_to_try_after_proof(self) -> None:
         again = acts.event(Move.ATTEMPT, Role.SECRETARY, 12, delivery=acts.delivery(12, "visit"))
         with pytest.raises(procedure.AlreadyDelivered, match="delivered on 2026-03-12"):

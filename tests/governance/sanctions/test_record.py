@@ -23,7 +23,10 @@ class TestActor:
 
 
 class TestToldOn:
-    """Proved delivery counts; without one, the last of at least two attempts by other means."""
+    """Proved delivery counts; without one, the last of at least two attempts by other means.
+
+    Attempts lie a week apart.
+    """
 
     @pytest.mark.parametrize(
         ("deliveries", "expected"),
@@ -37,6 +40,13 @@ class TestToldOn:
             (((10, "post", False), (17, "visit", False), (24, "post", False)), 17),
             (((10, "post", False), (17, "visit", False), (24, "phone", False)), 24),
             (((10, "post", False), (17, "visit", False), (24, "phone", True)), 24),
+            (((10, "post", False), (17, " Post", False)), None),
+            (((10, "post", False), (10, "visit", False)), None),
+            (((10, "post", False), (16, "visit", False)), None),
+            (((10, "post", False), (16, "visit", False), (17, "phone", False)), 17),
+            (((10, "post", False), (16, "visit", False), (17, "visit", False)), 17),
+            (((10, "post", False), (17, "visit", False), (20, "phone", False)), 17),
+            (((10, "post", False), (12, "visit", True)), 12),
         ],
     )
     def test_by_hand(
