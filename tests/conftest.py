@@ -5,8 +5,8 @@ STINTBOOK_TEST_POSTGRESQL     a PostgreSQL server for tests: postgresql://USER[:
 STINTBOOK_TEST_BROWSER        a Chromium for tests: the path of its executable
 STINTBOOK_TEST_REQUIRE_ALL    1: a test that does not run for want of one of these is a failure
 
-No server or browser is used that the environment does not name. Each run makes a database of its own and
-drops it.
+No server or browser is used that the environment does not name. Each run makes a database of its
+own and drops it.
 """
 
 import os
