@@ -168,14 +168,6 @@ class Roster:
         numbers = [member.number for member in self.members]
         assert numbers == sorted(set(numbers)), "members stand once each, in order of number"
 
-    def holders(self, numbers: Column, *, counted_by: str) -> Column:
-        """Return, for each member number, the number of the holder that amounts count for."""
-        if counted_by == "member" or not len(numbers):
-            return numbers
-        known = np.array([member.number for member in self.members], dtype=np.int64)
-        households = np.array([member.household for member in self.members], dtype=np.int64)
-        return households[np.searchsorted(known, numbers)]
-
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Order:

@@ -1,4 +1,4 @@
-"""Half-open date ranges, day numbers, ISO weeks and water years."""
+"""Half-open date ranges, day numbers, and the spans that amounts are added up over."""
 
 import enum
 from collections.abc import Iterator
@@ -114,27 +114,3 @@ def span_starts(days: NDArray[np.int64], *, per: Per, season: DateRange) -> NDAr
             return np.full_like(days, day_number(season.first))
         case _:
             assert_never(per)
-
-
-def span_from(start: date, *, per: Per, season: DateRange) -> DateRange:
-    """Return the span that begins on a day."""
-    match per:
-        case Per.DAY:
-            until = start + timedelta(days=1)
-        case Per.ISO_WEEK:
-            until = start + timedelta(days=7)
-        case Per.MONTH:
-            until = (start.replace(day=28) + timedelta(days=4)).replace(day=1)
-        case Per.SEASON:
-            until = season.until
-        case _:
-            assert_never(per)
-    return DateRange(first=start, until=until)
-
-
-def water_year(day: date, *, first_month: int) -> int:
-    """Return the water year of a day: named for the calendar year it ends in.
-
-    The US Geological Survey's begins on 1 October; elsewhere the month differs.
-    """
-    return day.year + 1 if first_month > 1 and day.month >= first_month else day.year
