@@ -16,16 +16,12 @@ from typing import NoReturn, TypeVar
 from pydantic import ValidationInfo
 
 from governance import quantities
-from governance.bylaws import clauses, context, spelling, tree
+from governance.bylaws import clauses, context, spelling, tree, words
 from governance.errors import StintbookError
 
 Read = TypeVar("Read")
 Named = TypeVar("Named", bound=enum.StrEnum)
 
-_MONTHS = (
-    *("January", "February", "March", "April", "May", "June", "July"),
-    *("August", "September", "October", "November", "December"),
-)
 _YEARS = range(1900, 2200)
 _LONGEST_LINE = 200
 _LONGEST_TEXT = 4_000
@@ -209,9 +205,9 @@ def day_of_year(value: object) -> tuple[int, int]:
     found = re.fullmatch(r"(\d{1,2})\s+([A-Za-z]+)", _written(value, accepted), re.ASCII)
     if found is None:
         _refuse(accepted)
-    if found[2] not in _MONTHS:
-        _refuse(accepted, near=spelling.nearest(found[2], _MONTHS))
-    month = _MONTHS.index(found[2]) + 1
+    if found[2] not in words.MONTHS:
+        _refuse(accepted, near=spelling.nearest(found[2], words.MONTHS))
+    month = words.MONTHS.index(found[2]) + 1
     try:
         datetime.date(2023, month, int(found[1]))  # a year without a 29 February
     except ValueError:

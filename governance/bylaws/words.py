@@ -19,7 +19,7 @@ _UNITS = {
     "d": ("day", "days"),
     "1": ("piece", "pieces"),
 }
-_MONTHS = (
+MONTHS = (
     *("January", "February", "March", "April", "May", "June", "July"),
     *("August", "September", "October", "November", "December"),
 )
@@ -89,7 +89,7 @@ def span(per: Per) -> str:
 def day_of_year(day: tuple[int, int]) -> str:
     """Write a month and day: ``10 April``."""
     month, number = day
-    return f"{number} {_MONTHS[month - 1]}"
+    return f"{number} {MONTHS[month - 1]}"
 
 
 def name(code: str) -> str:

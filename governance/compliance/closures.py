@@ -6,7 +6,7 @@ from datetime import date
 import numpy as np
 
 from governance import facts, periods
-from governance.bylaws import clauses
+from governance.bylaws import clauses, words
 from governance.compliance import evidence, findings, ground, sentences
 
 
@@ -136,8 +136,8 @@ def _finding(
 
 def _window_line(clause: clauses.ClosedWindow) -> str:
     where = ", ".join(clause.zones) if clause.zones else "everywhere"
-    first = sentences.day_of_year(clause.closed.first)
-    last = sentences.day_of_year(clause.closed.last)
+    first = words.day_of_year(clause.closed.first)
+    last = words.day_of_year(clause.closed.last)
     return f"Closed each year from {first} to {last}, both days included: {where}."
 
 
@@ -156,7 +156,6 @@ def _orders_over(
 
 def _order_line(order: facts.Order) -> str:
     where = ", ".join(order.zones) if order.zones else "everywhere"
-    span = f"from {order.during.first} until further notice"
-    if order.during.until != periods.OPEN_END:
-        span = sentences.when(order.during)
-    return f"Order {order.entry} of {order.authority} closed {where} {span}."
+    return (
+        f"Order {order.entry} of {order.authority} closed {where} {sentences.when(order.during)}."
+    )

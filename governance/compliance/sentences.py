@@ -10,11 +10,6 @@ from governance.compliance import evidence
 # Longer lists of entries are counted instead: a season's sum would fill a page.
 _LISTED_AT_MOST = 8
 
-_MONTHS = (
-    *("January", "February", "March", "April", "May", "June"),
-    *("July", "August", "September", "October", "November", "December"),
-)
-
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Reading:
@@ -54,14 +49,10 @@ def figure(*, amount: int, base: str, resource: str, book: clauses.Book) -> str:
     return quantities.amount_text(amount, base=base, unit_code=book.units_of(resource).unit)
 
 
-def day_of_year(day: tuple[int, int]) -> str:
-    """Write a (month, day) as ``10 April``."""
-    month, number = day
-    return f"{number} {_MONTHS[month - 1]}"
-
-
 def when(window: periods.DateRange) -> str:
     """Write a window: ``on 2026-04-03`` or ``from 2026-03-01 to 2026-06-28``."""
+    if window.until == periods.OPEN_END:
+        return f"from {window.first} until further notice"
     if window.length_days == 1:
         return f"on {window.first}"
     return f"from {window.first} to {window.last}"

@@ -7,6 +7,7 @@ from hypothesis import strategies as st
 
 from governance import quantities
 from governance.compliance import sentences
+from governance.periods import OPEN_END, DateRange
 from tests.governance.compliance import scenes
 
 
@@ -24,9 +25,9 @@ def test_a_window_of_one_day_is_a_day():
     assert sentences.when(scenes.SEASON) == "from 2026-03-01 to 2026-06-28"
 
 
-def test_a_day_of_the_year_is_read_with_its_month():
-    assert sentences.day_of_year((4, 10)) == "10 April"
-    assert sentences.day_of_year((12, 31)) == "31 December"
+def test_a_window_that_nobody_has_ended_goes_on():
+    opened = DateRange(first=date(2026, 4, 3), until=OPEN_END)
+    assert sentences.when(opened) == "from 2026-04-03 until further notice"
 
 
 @pytest.mark.parametrize(
