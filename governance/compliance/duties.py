@@ -2,7 +2,6 @@
 
 import math
 from collections.abc import Sequence
-from fractions import Fraction
 from typing import NamedTuple
 
 import numpy as np
@@ -66,15 +65,11 @@ def short(
 def minutes_of(*, clause: clauses.WorkDuty, paid: int) -> int:
     """Return the minutes of work that a sum in the smallest coin stands for, rounded down.
 
-    A price for ``d`` is the price of a working day of the clause's own length.
+    The price is that of a working day of the clause's own length.
     """
     if clause.instead is None:
         return 0
-    if clause.instead.per == "d":
-        minutes = Fraction(clause.day_minutes)
-    else:
-        minutes = quantities.converted(Fraction(1), from_unit=clause.instead.per, to_unit="min")
-    return math.floor(paid * minutes / clause.instead.money.minor)
+    return math.floor(paid * clause.day_minutes / clause.instead.money.minor)
 
 
 def _rendered(
@@ -160,6 +155,6 @@ def _rendered_lines(
         line,
         f"Paid {quantities.money_text(paid, currency=price.currency)},"
         f" at {quantities.money_text(each, currency=price.currency)}"
-        f" for each {clause.instead.per}:"
+        " for each working day:"
         f" {sentences.hours(minutes_of(clause=clause, paid=paid))}.",
     )

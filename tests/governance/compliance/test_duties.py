@@ -60,7 +60,7 @@ class TestShort:
         assert one.working == (
             "Owed 12 h: 2 × a working day of 6 h.",
             "Entries 7, 8, 9: worked 4 h.",
-            "Paid 45.00 EUR, at 60.00 EUR for each d: 4 h 30 min.",
+            "Paid 45.00 EUR, at 60.00 EUR for each working day: 4 h 30 min.",
             "Short by 3 h 30 min.",
         )
 
@@ -143,8 +143,7 @@ class TestWhen:
         ("60 EUR/d", 6_000, 360),  # the clause's working day, not 24 hours
         ("60 EUR/d", 100, 6),
         ("60 EUR/d", 116, 6),  # 6.96 minutes, rounded down
-        ("10 EUR/h", 1_000, 60),
-        ("0.005 EUR/min", 1, 2),  # half a cent a minute
+        ("0.005 EUR/d", 1, 720),  # half a cent a day
         (None, 6_000, 0),
     ],
 )
