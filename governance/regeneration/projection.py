@@ -1,8 +1,8 @@
 """Carry many plausible stocks through the seasons to come, under given takes or under a rule.
 
 Every candidate and every rule meets the same prospects, so that two rows of a risk table differ by
-their takes and by nothing else. Source: Punt & Hilborn
-1997 (Reviews in Fish Biology and Fisheries 7:35-63) for decision tables over draws (from memory).
+their takes and by nothing else. Source: Punt & Hilborn 1997 (Reviews in Fish Biology and Fisheries
+7:35-63) for decision tables over draws (from memory).
 """
 
 from collections.abc import Sequence
