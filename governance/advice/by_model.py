@@ -217,7 +217,7 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable:
         rows=tuple(
             RiskRow(
                 candidate=amount,
-                label=_label(amount, proposed, request.present),
+                label=candidates.label(amount, proposed=proposed, present=request.present),
                 chance_below=float(row.below_ever),
                 chance_cut=float(row.cut_next),
                 mean_take=stock.base_units(row.mean_take),
@@ -227,14 +227,6 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable:
             for amount, row in zip(amounts, rows, strict=True)
         ),
     )
-
-
-def _label(amount: int, proposed: int, present: int) -> str:
-    if amount == proposed:
-        return "proposed"
-    if amount == present:
-        return "as now"
-    return "none" if amount == 0 else ""
 
 
 def _history(stock: _Stock, proposed: int) -> StockHistory:
@@ -380,8 +372,8 @@ def _risk_words(risk: RiskTable) -> tuple[str, ...]:
     return (
         f"Taken every season, whatever comes, the proposal would bring the stock below"
         f" {risk.limit_words} at some time in {risk.horizon_years} seasons with a chance of"
-        f" {chance:.0%}; the book accepts {risk.at_most:.0%}. Where the rule sets the take anew"
-        f" each season, the chance is {risk.under_rule:.0%}.",
+        f" {chance:.1%}; the book accepts {risk.at_most:.1%}. Where the rule sets the take anew"
+        f" each season, the chance is {risk.under_rule:.1%}.",
     )
 
 

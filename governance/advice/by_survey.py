@@ -129,7 +129,7 @@ def _risk(
     for amount in amounts:
         chance = survey.chance_above_rate(standing=found, take=Fraction(amount), rate=method.rate)
         assert chance is not None, "the survey's error is known"
-        label = "proposed" if amount == proposed else "as now" if amount == request.present else ""
+        label = candidates.label(amount, proposed=proposed, present=request.present)
         rows.append(SurveyRiskRow(candidate=amount, label=label, chance_above=chance))
     return SurveyRisk(
         rate=rate,

@@ -10,14 +10,28 @@ def spread(*, named: tuple[int, ...], unit_size: int) -> tuple[int, ...]:
 
     The round ones reach half again as far as the largest named one.
 
-    :param unit_size: the base units in one unit for reading; steps are round in that unit.
+    :param unit_size: the base units in one unit for reading; steps are round in that unit, or, where
+        it is finer than what is counted, in base units.
     """
+    unit_size = max(1, unit_size)
     wanted = COUNT - len(set(named) - {0})
     top = max(*named, unit_size * wanted)
     step = _round_step(math.ceil(1.5 * top / unit_size / (wanted - 1)))
     round_ones = [place * step * unit_size for place in range(2 * COUNT)]
     kept = [each for each in round_ones if each not in named or each == 0][:wanted]
     return tuple(sorted({*kept, *named}))
+
+
+def label(amount: int, *, proposed: int, present: int) -> str:
+    """Return what a candidate is, in a word; empty for one that is only round.
+
+    :param present: nought where no allowable is in force, so that nothing is as now.
+    """
+    if amount == proposed:
+        return "proposed"
+    if amount == 0:
+        return "none"
+    return "as now" if amount == present else ""
 
 
 def _round_step(least: int) -> int:
