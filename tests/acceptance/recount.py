@@ -1,8 +1,7 @@
-"""An independent recount of a season report, from the journal's entries alone.
+"""An independent recount of a season report, from the journal's entries alone, a JSON line each.
 
-Written with the standard library and without a look at the book's own reckoning: what it reads are
-lines of JSON, an entry each, and what it knows of the trade stands below. Two things no entry says,
-so they are told: which season, and which clauses count a household as one.
+Written with the standard library, without a look at the book's own reckoning. Two things no entry
+says, so they are told: which season, and which clauses count a household as one.
 """
 
 import json
