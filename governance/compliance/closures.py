@@ -7,7 +7,7 @@ import numpy as np
 
 from governance import facts, periods
 from governance.bylaws import clauses, words
-from governance.compliance import evidence, findings, ground, sentences
+from governance.compliance import evidence, findings, forbidden, ground, sentences
 
 
 def in_closed_window(
@@ -26,7 +26,15 @@ def in_closed_window(
     closed = live & np.array([_is_closed(clause.closed, day) for day in laid.season.days()])
     line = _window_line(clause)
     return tuple(
-        _finding(clause=clause, book=book, takes=takes, acts=acts, lines=(line,), orders=())
+        forbidden.finding(
+            clause_id=clause.head.id,
+            or_else=clause.head.or_else,
+            book=book,
+            takes=takes,
+            acts=acts,
+            lines=(line,),
+            reasons=(),
+        )
         for takes in laid.takes_of(clause.resource)
         for acts in _closed_takes(
             takes=takes,
@@ -59,10 +67,15 @@ def against_orders(
             closed |= _days_of_zones(order.zones, takes.table.zones)[:, np.newaxis] & days
         for acts in _closed_takes(takes=takes, closed=closed, who=clause.head.who):
             broken = _orders_over(orders, acts=acts)
-            lines = tuple(_order_line(order) for order in broken)
             found.append(
-                _finding(
-                    clause=clause, book=book, takes=takes, acts=acts, lines=lines, orders=broken
+                forbidden.finding(
+                    clause_id=clause.head.id,
+                    or_else=clause.head.or_else,
+                    book=book,
+                    takes=takes,
+                    acts=acts,
+                    lines=(_order_line(order) for order in broken),
+                    reasons=(_order_row(order) for order in broken),
                 )
             )
     return tuple(found)
@@ -93,47 +106,6 @@ def _closed_takes(
         yield acts
 
 
-def _finding(
-    *,
-    clause: clauses.ClosedWindow | clauses.OutsideOrder,
-    book: clauses.Book,
-    takes: ground.Takes,
-    acts: tuple[evidence.Act, ...],
-    lines: tuple[str, ...],
-    orders: Sequence[facts.Order],
-) -> findings.Finding:
-    read = sentences.reading(book=book, table=takes.table)
-    key = findings.Key(
-        clause=clause.head.id,
-        subject_kind=findings.SubjectKind.MEMBER,
-        subject=acts[0].member,
-        resource=clause.resource,
-        window=evidence.day_of(acts),
-    )
-    total = sum(act.amount for act in acts)
-    ordered = (
-        evidence.line(each.entry, each.authority, each.during.first, each.during.until)
-        for each in orders
-    )
-    return findings.Finding(
-        key=key,
-        edition=book.edition,
-        or_else=clause.head.or_else,
-        base=read.base,
-        total=total,
-        limit=0,
-        breach=total,
-        overuse=total,
-        entries=evidence.entries(acts),
-        working=(
-            sentences.taken(acts=acts, window=key.window, read=read),
-            *lines,
-            f"All of it, {read.text(total)}, lies in what was closed.",
-        ),
-        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*evidence.lines(acts), *ordered)),
-    )
-
-
 def _window_line(clause: clauses.ClosedWindow) -> str:
     where = ", ".join(clause.zones) if clause.zones else "everywhere"
     first = words.day_of_year(clause.closed.first)
@@ -159,3 +131,7 @@ def _order_line(order: facts.Order) -> str:
     return (
         f"Order {order.entry} of {order.authority} closed {where} {sentences.when(order.during)}."
     )
+
+
+def _order_row(order: facts.Order) -> str:
+    return evidence.line(order.entry, order.authority, order.during.first, order.during.until)

@@ -6,7 +6,7 @@ import numpy as np
 
 from governance import facts, periods
 from governance.bylaws import clauses
-from governance.compliance import evidence, findings, ground, sentences
+from governance.compliance import evidence, findings, forbidden, ground, sentences
 
 
 def taken_while_suspended(
@@ -50,35 +50,19 @@ def _finding(
     acts: tuple[evidence.Act, ...],
     member: facts.Member,
 ) -> findings.Finding:
-    read = sentences.reading(book=book, table=takes.table)
     suspension = _first_over(member, periods.date_of(acts[0].day))
-    key = findings.Key(
-        clause=suspension.value,
-        subject_kind=findings.SubjectKind.MEMBER,
-        subject=member.number,
-        resource=takes.table.resource,
-        window=evidence.day_of(acts),
-    )
-    total = sum(act.amount for act in acts)
     during = suspension.during
-    named = evidence.line(suspension.entry, suspension.value, during.first, during.until)
-    return findings.Finding(
-        key=key,
-        edition=book.edition,
+    return forbidden.finding(
+        clause_id=suspension.value,
         or_else=_ladder(book=book, clause_id=suspension.value),
-        base=read.base,
-        total=total,
-        limit=0,
-        breach=total,
-        overuse=total,
-        entries=evidence.entries(acts),
-        working=(
-            sentences.taken(acts=acts, window=key.window, read=read),
+        book=book,
+        takes=takes,
+        acts=acts,
+        lines=(
             f"Entry {suspension.entry} suspended the member for clause {suspension.value}"
             f" {sentences.when(during)}.",
-            f"Limit {read.text(0)} while suspended; beyond it {read.text(total)}.",
         ),
-        inputs=evidence.digest(book=book, key=key, limit=0, rows=(*evidence.lines(acts), named)),
+        reasons=(evidence.line(suspension.entry, suspension.value, during.first, during.until),),
     )
 
 

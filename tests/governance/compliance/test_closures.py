@@ -52,7 +52,7 @@ class TestClosedWindow:
         assert one.working == (
             "Entries 5, 6: 7 kg + 2 kg = 9 kg on 2026-04-12.",
             "Closed each year from 10 April to 30 April, both days included: mill_reach.",
-            "All of it, 9 kg, lies in what was closed.",
+            "Nothing was allowed: all of it, 9 kg, lies beyond the limit.",
         )
 
     def test_no_zone_named_means_everywhere(self):
@@ -151,7 +151,7 @@ class TestOutsideOrder:
             "Entry 1: 3 kg on 2026-05-04.",
             "Order 77 of the shellfish-water authority closed mill_reach, pier_sand"
             " from 2026-05-04 to 2026-05-18.",
-            "All of it, 3 kg, lies in what was closed.",
+            "Nothing was allowed: all of it, 3 kg, lies beyond the limit.",
         )
         assert (one.breach, one.overuse, one.limit, one.or_else) == (
             3_000,

@@ -52,7 +52,7 @@ def test_any_take_under_suspension_is_found_under_the_clause_broken_before():
     assert one.working == (
         "Entries 1, 2: 2 kg + 1 kg = 3 kg on 2026-05-03.",
         "Entry 900 suspended the member for clause 3.2 from 2026-05-01 to 2026-05-14.",
-        "Limit 0 kg while suspended; beyond it 3 kg.",
+        "Nothing was allowed: all of it, 3 kg, lies beyond the limit.",
     )
 
 
