@@ -57,7 +57,8 @@ class HockeyStick:
 class Reading(enum.StrEnum):
     """What falls on a straight line between the two levels of a 40-10 rule.
 
-    The two differ: a quarter of the way down, the catch read one way is far from the other.
+    The two differ: at a quarter of the unfished biomass, 40-10 read as a line in the catch gives
+    1.6 times the catch of the ramp in the fraction.
     """
 
     LINE_IN_CATCH = "line_in_catch"
