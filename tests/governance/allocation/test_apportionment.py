@@ -27,28 +27,28 @@ class TestPublished:
     def test_three_roundings_side_by_side(
         self, how: Apportionment, expected: tuple[int, ...]
     ) -> None:
-        """RA-08: worked solutions on staatsrecht.honikel.de, 10 seats."""
+        """Worked solutions on staatsrecht.honikel.de, 10 seats."""
         assert parts(10, (6100, 5000, 900), how) == expected
 
     @pytest.mark.parametrize(("house", "expected"), [(49, (2, 3, 44)), (51, (1, 4, 46))])
     def test_alabama_paradox(self, house: int, expected: tuple[int, ...]) -> None:
-        """RA-09: net.math note of March 1982, citing Saari 1978, Am. Math. Monthly."""
+        """The net.math note of March 1982, citing Saari 1978, Am. Math. Monthly."""
         assert parts(house, (3, 7, 90), LARGEST_REMAINDER) == expected
 
     def test_exact_tie_between_remainders_goes_to_the_lower_number(self) -> None:
-        """RA-09: the same shares at 50 leave 1.5 against 3.5; the tie-break is our clause's."""
+        """The shares of Saari 1978 at 50 leave 1.5 against 3.5; the tie-break is our clause's."""
         assert parts(50, (3, 7, 90), LARGEST_REMAINDER) == (2, 3, 45)
 
     @pytest.mark.parametrize(
         ("house", "expected"), [(49, (1, 3, 45)), (50, (2, 3, 45)), (51, (2, 4, 45))]
     )
     def test_webster_shows_no_paradox(self, house: int, expected: tuple[int, ...]) -> None:
-        """RA-10: Balinski & Young 1982, computed; at 50 the tie is 3/1.5 against 7/3.5."""
+        """Balinski & Young 1982, computed; at 50 the tie is 3/1.5 against 7/3.5."""
         assert parts(house, (3, 7, 90), WEBSTER) == expected
 
     @pytest.mark.parametrize(("seats", "expected"), [(10, (4, 4, 2)), (11, (5, 5, 1))])
     def test_small_paradox(self, seats: int, expected: tuple[int, ...]) -> None:
-        """RA-11: widely used textbook case, from memory; recomputed."""
+        """Widely used textbook case, from memory; recomputed."""
         assert parts(seats, (6, 6, 2), LARGEST_REMAINDER) == expected
 
 

@@ -29,7 +29,7 @@ def figures(found: settlement.Settlement) -> tuple[int, int, int]:
 
 class TestLeft:
     def test_a_published_cap(self) -> None:
-        """SA-03: Regulation (EC) 847/96 Art. 4(2): of 180 unused at most 10 % of 1,000 moves."""
+        """Regulation (EC) 847/96 Art. 4(2): of 180 unused at most 10 % of 1,000 moves."""
         found = settlement.settle(carry_over=TENTH, payback=ONCE, allotted=1_000, taken=820)
         assert figures(found) == (100, 80, 0)
 
