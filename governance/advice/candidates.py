@@ -10,8 +10,8 @@ def spread(*, named: tuple[int, ...], unit_size: int) -> tuple[int, ...]:
 
     The round ones reach half again as far as the largest named one.
 
-    :param unit_size: the base units in one unit for reading; steps are round in that unit, or, where
-        it is finer than what is counted, in base units.
+    :param unit_size: the base units in one unit for reading; steps are round in that unit, or in
+        base units where it is finer than those.
     """
     unit_size = max(1, unit_size)
     wanted = COUNT - len(set(named) - {0})
