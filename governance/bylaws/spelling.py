@@ -8,10 +8,16 @@ _MOST_LISTED = 20
 
 
 def nearest(name: str, known: Iterable[str]) -> str | None:
-    """Return the known name that a misspelt one is closest to, if any is close."""
+    """Return the known name that a misspelt one is closest to, if any is close.
+
+    One that differs by capitals alone comes first: ``Kg`` is meant for ``kg``, never for ``g``.
+    """
     if len(name) > _LONGEST_SHOWN:
         return None
     short = sorted(each for each in known if len(each) <= _LONGEST_SHOWN)
+    same = [each for each in short if each.casefold() == name.casefold()]
+    if same:
+        return same[0]
     matches = difflib.get_close_matches(name, short, n=1, cutoff=0.6)
     return matches[0] if matches else None
 

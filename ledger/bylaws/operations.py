@@ -102,3 +102,20 @@ def _check_measures(commons_id: int, book: clauses.Book) -> None:
                 found=f"{units.unit} in {units.base}",
                 accepted=f"{resource.unit} in {resource.base}",
             )
+    _check_zones(commons_id, book)
+
+
+def _check_zones(commons_id: int, book: clauses.Book) -> None:
+    """Refuse a closed window over a ground that nobody knows: it would close nothing."""
+    zones = commons_queries.zones(commons_id=commons_id).values()
+    for clause in book.clauses:
+        if not isinstance(clause, clauses.ClosedWindow):
+            continue
+        kept = [zone.code for zone in zones if zone.resource == clause.resource]
+        for zone in clause.zones:
+            if zone not in kept:
+                raise BookOfAnotherCommons(
+                    what=f"in clause {clause.head.id} the zone",
+                    found=zone,
+                    accepted=", ".join(kept),
+                )

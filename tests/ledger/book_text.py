@@ -15,6 +15,7 @@ def book_text(
     approvals: int = 2,
     instead: str = ", instead: 60 EUR/d",
     daily_clams: str = "40 kg",
+    spawning: str = "inner_flats",
 ) -> str:
     """Return the text of an edition; the changes are what tests vary.
 
@@ -33,6 +34,7 @@ def book_text(
         approvals=approvals,
         instead=instead,
         daily_clams=daily_clams,
+        spawning=spawning,
     )
     return text.replace(" EUR", f" {money}")
 
@@ -88,7 +90,7 @@ clauses:
     kind: closed_window
     who: {{class: licensed}}
     must_not: withdraw
-    what: {{resource: mullet, zones: [inner_flats]}}
+    what: {{resource: mullet, zones: [{spawning}]}}
     when: {{from: 10 April, through: 30 April}}
     or_else: closure
     text: We leave the inner flats in peace.

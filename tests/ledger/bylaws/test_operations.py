@@ -95,6 +95,11 @@ class TestAdopt:
                 operations.BookOfAnotherCommons,
                 ("units of mullet 'kg in kg'", "'kg in g'"),
             ),
+            (
+                {"spawning": "iner_flats"},
+                operations.BookOfAnotherCommons,
+                ("clause 4.1 the zone 'iner_flats'", "inner_flats, outer_bay"),
+            ),
         ],
     )
     def test_a_book_of_another_commons_is_refused(
