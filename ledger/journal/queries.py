@@ -5,7 +5,8 @@ from collections.abc import Collection, Iterable, Iterator
 from datetime import UTC, date, datetime
 from typing import ClassVar
 
-from django.db.models import Exists, OuterRef, Sum
+from django.db.models import Exists, F, OuterRef, Sum
+from django.db.models.lookups import LessThanOrEqual
 
 from ledger.foundation.errors import LedgerError
 from ledger.journal import columns, models, tree
@@ -161,7 +162,10 @@ def rows(
     )
     reversal = models.Entry.objects.filter(commons_id=commons_id, reverses=OuterRef("number"))
     if up_to is not None:
-        found, reversal = found.filter(number__lte=up_to), reversal.filter(number__lte=up_to)
+        found = found.filter(number__lte=up_to)
+        # The sum is there so that a planner without statistics looks reversals up by what they
+        # reverse, and does not read every number up to the last for every entry.
+        reversal = reversal.filter(LessThanOrEqual(F("number") + 0, up_to))
     if first_day is not None:
         found = found.filter(day__gte=first_day)
     if until_day is not None:
