@@ -4,10 +4,10 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from datetime import UTC, date, datetime
 from decimal import Decimal
-from fractions import Fraction
 from typing import ClassVar
 
 from governance import quantities
+from governance.compliance import duties
 from governance.periods import DateRange
 from ledger.bylaws import queries as bylaws
 from ledger.commons import operations as commons
@@ -239,13 +239,14 @@ def minutes_bought(*, commons_id: int, clause: str, day: date, amount: int) -> i
 
     :raises NotPayable: if no duty of this name can be paid off.
     """
-    duties = bylaws.work_duties(commons_id=commons_id, day=day)
-    prices = {duty.head.id: (duty, duty.instead) for duty in duties if duty.instead is not None}
-    if clause not in prices:
-        raise NotPayable(found=clause, day=day, accepted=", ".join(prices) or "none")
-    duty, price = prices[clause]
-    days = Fraction(amount) / price.money.minor
-    return quantities.rounded(days * duty.day_minutes, quantities.Rounding.DOWN)
+    payable = {
+        duty.head.id: duty
+        for duty in bylaws.work_duties(commons_id=commons_id, day=day)
+        if duty.instead is not None
+    }
+    if clause not in payable:
+        raise NotPayable(found=clause, day=day, accepted=", ".join(payable) or "none")
+    return duties.minutes_of(clause=payable[clause], paid=amount)
 
 
 def moved(
