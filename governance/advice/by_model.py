@@ -142,7 +142,7 @@ def advise(
         bounds=kept.words,
         risk=risk,
         survey_risk=None,
-        stock=_history(stock, kept.amount),
+        stock=_history(stock),
         reasons=_reasons(stock, by_rule, kept, risk),
         cautions=_cautions(stock),
         runs=DRAWS,
@@ -229,13 +229,15 @@ def _risk(stock: _Stock, proposed: int) -> RiskTable:
     )
 
 
-def _history(stock: _Stock, proposed: int) -> StockHistory:
-    """Return the stock over the years of the series, then ahead under the proposed take."""
+def _history(stock: _Stock) -> StockHistory:
+    """Return the stock over the years of the series, then ahead under the book's rule.
+
+    The rule sets the take anew each season from the stock as it then is: nobody plans to take the
+    same for twenty years whatever comes.
+    """
     fit = stock.fit
     past = projection.fan_of(draws.histories(fit=fit, draws=stock.plausible))
-    future = projection.fan(
-        ahead=stock.ahead, policy=stock.read_units(proposed), order=fit.setting.order
-    )
+    future = projection.fan(ahead=stock.ahead, policy=stock.rule, order=fit.setting.order)
     first_ahead = fit.series.years[-1] + 1
     trigger = levels.trigger_of(stock.method.rule)
     limit = levels.limit_of(stock.method.rule)

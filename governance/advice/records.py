@@ -109,7 +109,7 @@ class ObservedStock:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class StockHistory:
-    """The stock by year: estimated up to ``first_projected``, projected from that year on.
+    """The stock by year: estimated up to ``first_projected``, then projected under the rule.
 
     Amounts in base units. ``limit`` is the lowest level that the book accepts, ``trigger`` the one
     below which its rule lowers the take; None where the rule has none.
