@@ -117,6 +117,12 @@ def entry(*, commons_id: int, number: int) -> EntryRecord:
     return sealed.record(reversed_by=found.get(number))
 
 
+def numbers_by_key(*, commons_id: int, device: str, keys: Collection[str]) -> dict[str, int]:
+    """Return those of a device's keys that stand in the journal, with their entries' numbers."""
+    found = models.Entry.objects.filter(commons_id=commons_id, device=device, key__in=keys)
+    return dict(found.values_list("key", "number"))
+
+
 def entries(
     *,
     commons_id: int,

@@ -1,6 +1,7 @@
 """The writers of withdrawals, contributions and dues: each act is one entry."""
 
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 from datetime import date
 from typing import ClassVar
 
@@ -68,7 +69,11 @@ def record_withdrawals(
     journal.hold(commons_id=commons_id)
     kept = writing.kept(commons_id=commons_id)
     drafts = [writing.withdrawal(kept=kept, slip=slip, key=slip.slip) for slip in slips]
-    return _append(commons_id, drafts, hand)
+    try:
+        return _append(commons_id, drafts, hand)
+    except journal.KeyReused:
+        # A season that opened or closed since has other accounts; the slip is the same for that.
+        return _append(commons_id, _as_posted(commons_id, drafts), hand)
 
 
 @transactions.required
@@ -335,6 +340,23 @@ def undo_give_back(*, commons_id: int, number: int, reason: str, hand: Hand) -> 
         ),
         hand=hand,
     )
+
+
+def _as_posted(commons_id: int, drafts: Sequence[Draft]) -> list[Draft]:
+    """Return slips with the accounts that they were posted to, where they stand already."""
+    keys = [draft.key for draft in drafts if draft.key is not None]
+    numbers = journal_queries.numbers_by_key(commons_id=commons_id, device=writing.DESK, keys=keys)
+    return [
+        replace(
+            draft,
+            postings=journal_queries.entry(
+                commons_id=commons_id, number=numbers[draft.key]
+            ).postings,
+        )
+        if draft.key in numbers
+        else draft
+        for draft in drafts
+    ]
 
 
 def _append(commons_id: int, drafts: Sequence[Draft], hand: Hand) -> tuple[Receipt, ...]:

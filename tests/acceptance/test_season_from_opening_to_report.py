@@ -7,6 +7,7 @@ never break: I1 to I10, I12 and I13.
 import io
 from collections import Counter
 from collections.abc import Mapping
+from dataclasses import replace
 from datetime import date
 from decimal import Decimal
 from fractions import Fraction
@@ -19,9 +20,12 @@ from django.db.models import Count
 from governance.compliance.findings import Key
 from ledger.advice import queries as advice
 from ledger.foundation.models import Job
+from ledger.journal import operations as journal_operations
 from ledger.journal import queries as journal
 from ledger.journal import tree
 from ledger.judgement import queries as judgement
+from ledger.management import playing
+from ledger.movements import operations as movements
 from ledger.seasons import queries as seasons
 from tests.acceptance import played
 from tests.acceptance.played import PlayedSeason
@@ -211,6 +215,29 @@ class TestJournal:
         # The size and the root that the receipts name are those of that evening.
         (found,) = {(receipt.size, receipt.root) for receipt in season.replayed}
         assert found in {(head.size, head.root) for head in season.heads}
+
+    def test_a_slip_played_after_the_close_adds_nothing_either(self, season: PlayedSeason) -> None:
+        before = journal.head(commons_id=season.commons_id)
+        landing = season.play.scenario.landings[0]
+        (receipt,) = movements.record_withdrawals(
+            commons_id=season.commons_id,
+            slips=[playing.slip_of(season.play, landing)],
+            hand=season.play.hand_of("secretary"),
+        )
+        assert (receipt.replayed, receipt.number) == (True, season.replayed[0].number)
+        assert journal.head(commons_id=season.commons_id) == before
+
+    def test_another_slip_under_a_number_that_stands_is_refused(self, season: PlayedSeason) -> None:
+        landing = season.play.scenario.landings[0]
+        slip = playing.slip_of(season.play, landing)
+        (line,) = slip.lines
+        heavier = replace(slip, lines=(replace(line, given=line.given + 1),))
+        with pytest.raises(journal_operations.KeyReused):
+            movements.record_withdrawals(
+                commons_id=season.commons_id,
+                slips=[heavier],
+                hand=season.play.hand_of("secretary"),
+            )
 
 
 class TestAllotments:
