@@ -46,10 +46,10 @@ def _section(section: Section) -> Iterator[str]:
     for table in section.tables:
         yield ""
         yield table.caption
-        yield from _table(table) if table.rows else [f"  {table.empty}"]
+        yield from table_lines(table) if table.rows else [f"  {table.empty}"]
 
 
-def _table(table: Table) -> Iterator[str]:
+def table_lines(table: Table, /) -> Iterator[str]:
     """Yield a table; one that is too wide leaves out the columns that hold nothing, and says so."""
     grid = _Grid.of(table, *_FITS[0])
     if grid.width > WIDTH:
