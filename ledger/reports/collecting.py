@@ -10,7 +10,14 @@ from ledger.commons import queries as commons
 from ledger.fieldwork import queries as fieldwork
 from ledger.foundation.errors import LedgerError
 from ledger.journal import queries as journal
-from ledger.reports import case_figures, cautions, figures, giving_figures, use_figures
+from ledger.reports import (
+    case_figures,
+    cautions,
+    detail_figures,
+    figures,
+    giving_figures,
+    use_figures,
+)
 from ledger.reports.figures import SeasonFigures
 from ledger.reports.reported import Reported
 from ledger.seasons import queries as seasons
@@ -40,15 +47,20 @@ def season_figures(*, commons_id: int, first: date, made_at: datetime) -> Season
     record = reported.commons
     return SeasonFigures(
         commons=record.name,
+        is_demo=record.is_demo,
         season=str(reported.during.first.year),
+        first=reported.during.first,
         made_at=made_at,
         zone=record.zone,
         proof=journal.proof_line(journal.head(commons_id=commons_id)),
         currency=record.money,
         edition=_edition(reported.book),
         resources=use_figures.resources(reported),
+        names=detail_figures.names(reported),
         findings=case_figures.findings(reported),
+        finding_details=detail_figures.findings(reported),
         cases=case_figures.cases_of(reported),
+        case_details=detail_figures.cases_of(reported),
         dues=giving_figures.dues(reported),
         restitution=giving_figures.restitution(reported),
         duties=giving_figures.duties(reported),

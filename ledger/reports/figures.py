@@ -15,6 +15,10 @@ from typing import ClassVar
 
 from governance.advice.records import Advice
 from ledger.foundation.errors import LedgerError
+from ledger.reports.details import CaseDetail, FindingDetail, NextHolding
+
+INSTEAD_OF_WORK = "instead of work"
+"""The kind of what was paid in place of work, which is no fine."""
 
 
 class FiguresDisagree(LedgerError):
@@ -74,13 +78,16 @@ class ZoneRow:
 class SettlementFigures:
     """How a resource's season was settled, in base units, summed over the members.
 
+    ``given_back`` went from the members' allotments to the pool in the course of the season.
     ``carried`` goes into the members' next allotments, ``owed`` comes off them, ``unclaimed``
-    returned to the pool.
+    returned to the pool. ``after_close`` was entered as taken once all that was settled.
     """
 
+    given_back: int
     carried: int
     unclaimed: int
     owed: int
+    after_close: int
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -90,12 +97,13 @@ class ResourceFigures:
     ``base`` and ``unit`` are the UCUM codes of the amounts as kept and as read. ``opens`` and
     ``closes`` are the first and the last local day, both included. ``allowable`` is the one in
     force on the last day; ``allotted`` and ``reserve`` are its parts; ``carried_in`` came from the
-    season before; ``left`` is what remained of all of it. ``daily`` holds a row for each day with a
+    season before; ``left`` is what remained of all of it, and ``settlement`` says where that went.
+    ``daily`` holds a row for each day with a
     take, in the order of days, and sums to ``taken``. ``members_took`` of ``members_entitled`` took
     anything.
 
-    :raises FiguresDisagree: if the daily takes do not sum to ``taken``, or their days are not in
-        order.
+    :raises FiguresDisagree: if the daily takes do not sum to ``taken``, their days are not in
+        order, or what was left does not follow from the rest or does not go where it is settled.
     """
 
     code: str
@@ -132,6 +140,24 @@ class ResourceFigures:
             other="the same list in order",
             expected=sorted(set(days)),
         )
+        _agree(
+            what=f"What is left of {self.code}",
+            found=self.left,
+            other="the allowable and what was carried in, less what was taken",
+            expected=self.allowable + self.carried_in - self.taken,
+        )
+        settled = self.settlement
+        _agree(
+            what=f"What is left of {self.code}",
+            found=self.left,
+            other="the sum of the parts that it was settled into",
+            expected=self.reserve
+            + settled.given_back
+            + settled.carried
+            + settled.unclaimed
+            - settled.owed
+            - settled.after_close,
+        )
 
     @property
     def used(self) -> Fraction | None:
@@ -141,16 +167,29 @@ class ResourceFigures:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class HoldingFigures:
-    """One member's position in one resource, in its base unit.
+    """One member's position in one resource when its season closed, in its base unit.
 
+    ``allotment`` is the part of the allowable, ``carried_in`` what came from the season before
+    (below zero where something was owed), ``given_back`` what cases took off in the season.
     ``left`` is negative where more was taken than the member had.
+
+    :raises FiguresDisagree: if ``left`` does not follow from the others.
     """
 
     resource: str
     allotment: int
     carried_in: int
+    given_back: int
     taken: int
     left: int
+
+    def __post_init__(self) -> None:
+        _agree(
+            what=f"What a member has left of {self.resource}",
+            found=self.left,
+            other="the allotment and what was carried in, less what was given back and taken",
+            expected=self.allotment + self.carried_in - self.given_back - self.taken,
+        )
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -258,13 +297,14 @@ class MoneyDueRow:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class RestitutionRow:
-    """What was taken too much and is given back in the resource itself, in its base unit."""
+    """What cases took off members' allotments, in the resource's base unit.
+
+    It is what was taken beyond a limit, and is left to all: nothing goes back into the water.
+    """
 
     resource: str
     count: int
-    charged: int
-    paid: int
-    open: int
+    amount: int
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -281,6 +321,11 @@ class DutyFigures:
     replaced: int
     short: int
     members_short: int
+
+    @property
+    def beyond(self) -> int:
+        """Return how much those gave beyond what they owed who gave more."""
+        return self.rendered + self.replaced + self.short - self.owed
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -345,8 +390,9 @@ class ObservationRow:
 class NextSeasonRow:
     """The next season of one resource as adopted, in its base unit.
 
-    The last three fields are the smallest, the median (rounded down) and the largest allotment
-    among ``holders`` members.
+    ``allowable`` is ``reserve`` and ``allotted``; ``holdings`` say what each member may take.
+
+    :raises FiguresDisagree: if the allotments do not sum to ``allotted``.
     """
 
     resource: str
@@ -357,10 +403,54 @@ class NextSeasonRow:
     allowable: int
     reserve: int
     allotted: int
-    holders: int
-    smallest: int
-    median: int
-    largest: int
+    holdings: tuple[NextHolding, ...]
+
+    def __post_init__(self) -> None:
+        _agree(
+            what=f"The sum of the next allotments of {self.resource}",
+            found=sum(held.allotment for held in self.holdings),
+            other="what is allotted",
+            expected=self.allotted,
+        )
+        _agree(
+            what=f"What is allotted of {self.resource}",
+            found=self.allotted,
+            other="the allowable less the reserve",
+            expected=self.allowable - self.reserve,
+        )
+
+    @property
+    def carried_in(self) -> int:
+        """Return what members carry in from the season before, summed."""
+        return sum(held.carried_in for held in self.holdings)
+
+    @property
+    def owed(self) -> int:
+        """Return what comes off for what was taken beyond the measure, summed."""
+        return sum(held.owed for held in self.holdings)
+
+    @property
+    def given_back(self) -> int:
+        """Return what comes off for what cases took off since the close, summed."""
+        return sum(held.given_back for held in self.holdings)
+
+    @property
+    def may_take(self) -> int:
+        """Return what the members may take in all."""
+        return sum(held.may_take for held in self.holdings)
+
+    @property
+    def shares(self) -> tuple[int, ...]:
+        """Return what each may take who may take anything, from the smallest."""
+        return tuple(sorted(held.may_take for held in self.holdings if held.may_take > 0))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class NameRow:
+    """What a code of the book is called on a page."""
+
+    code: str
+    name: str
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -369,21 +459,27 @@ class SeasonFigures:
 
     ``made_at`` is the aware moment of making, shown in the time zone ``zone``; ``proof`` is the
     proof line of the journal's head that the figures rest on; ``currency`` is an ISO 4217 code.
-    ``cautions`` are the sentences that the reader must see.
+    ``first`` is the first day of the season; ``names`` are those of zones, seasons and clauses,
+    for texts that name them by code. ``cautions`` are the sentences that the reader must see.
 
     :raises FiguresDisagree: if a row names a resource that the record does not hold.
     """
 
     commons: str
+    is_demo: bool
     season: str
+    first: date
     made_at: datetime
     zone: str
     proof: str
     currency: str
     edition: EditionFigures
     resources: tuple[ResourceFigures, ...]
+    names: tuple[NameRow, ...]
     findings: tuple[FindingRow, ...]
+    finding_details: tuple[FindingDetail, ...]
     cases: CaseFigures
+    case_details: tuple[CaseDetail, ...]
     dues: tuple[MoneyDueRow, ...]
     restitution: tuple[RestitutionRow, ...]
     duties: DutyFigures | None
@@ -412,6 +508,10 @@ class SeasonFigures:
             other="the list of resources of the report",
             expected=sorted(known),
         )
+
+    def name_of(self, code: str) -> str:
+        """Return what a code is called, or the code where it has no name."""
+        return next((row.name for row in self.names if row.code == code), code)
 
     def resource(self, code: str) -> ResourceFigures:
         """Return the use of the resource of a code, which the record is known to hold."""

@@ -10,7 +10,7 @@ from ledger.journal import queries as journal
 from ledger.movements import queries as movements
 from ledger.reports import figures
 from ledger.reports.reported import Reported
-from ledger.reports.use_figures import carried_into
+from ledger.reports.use_figures import allotted_in, carried_into
 from ledger.seasons import queries as seasons
 
 
@@ -37,14 +37,14 @@ def dues(reported: Reported) -> tuple[figures.MoneyDueRow, ...]:
     paid = sum(row.facts["amount"] for row in instead)
     rows.append(
         figures.MoneyDueRow(
-            kind="instead of work", count=len(instead), charged=paid, paid=paid, open=0
+            kind=figures.INSTEAD_OF_WORK, count=len(instead), charged=paid, paid=paid, open=0
         )
     )
     return tuple(row for row in rows if row.count)
 
 
 def restitution(reported: Reported) -> tuple[figures.RestitutionRow, ...]:
-    """Return what was given back in the resource itself."""
+    """Return what was taken off allotments in the resource itself."""
     season_of = {season.code: season.resource for season in reported.seasons}
     given: Counter[str] = Counter()
     count: Counter[str] = Counter()
@@ -57,9 +57,7 @@ def restitution(reported: Reported) -> tuple[figures.RestitutionRow, ...]:
         figures.RestitutionRow(
             resource=resource,
             count=count[resource],
-            charged=given[resource],
-            paid=given[resource],
-            open=0,
+            amount=given[resource],
         )
         for resource in sorted(given)
     )
@@ -144,17 +142,16 @@ def standings(reported: Reported) -> tuple[figures.StandingRow, ...]:
 def _holdings(
     commons_id: int, season: seasons.SeasonRecord
 ) -> Mapping[int, figures.HoldingFigures]:
-    carried = carried_into(commons_id, season)
+    parts, carried = allotted_in(commons_id, season), carried_into(commons_id, season)
     taken = seasons.taken(commons_id=commons_id, season=season.code)
     return {
         member: figures.HoldingFigures(
             resource=season.resource,
-            allotment=allotted - carried.get(member, 0),
+            allotment=parts.get(member, 0),
             carried_in=carried.get(member, 0),
+            given_back=parts.get(member, 0) + carried.get(member, 0) - had,
             taken=taken.get(member, 0),
-            left=allotted - taken.get(member, 0),
+            left=had - taken.get(member, 0),
         )
-        for member, allotted in seasons.allotments(
-            commons_id=commons_id, season=season.code
-        ).items()
+        for member, had in seasons.allotments(commons_id=commons_id, season=season.code).items()
     }

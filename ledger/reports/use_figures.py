@@ -18,6 +18,7 @@ from ledger.journal import queries as journal
 from ledger.journal.leaves import Posting, Row
 from ledger.movements import queries as movements
 from ledger.reports import figures
+from ledger.reports.details import NextHolding
 from ledger.reports.reported import Reported
 from ledger.seasons import queries as seasons
 
@@ -63,7 +64,7 @@ def _resource(
         daily=_daily(takes),
         allowable_steps=(figures.AllowableStep(from_day=season.during.first, amount=amount),),
         zones=_zones(commons_id, takes),
-        settlement=_settlement(commons_id, season),
+        settlement=_settlement(commons_id, season, taken=taken),
     )
 
 
@@ -94,30 +95,72 @@ def _zones(commons_id: int, takes: facts.Withdrawals) -> tuple[figures.ZoneRow, 
 
 def carried_into(commons_id: int, season: seasons.SeasonRecord) -> Mapping[int, int]:
     """Return what was carried into a season, by member, in base units; below zero was owed."""
-    adopted = seasons.allowable(commons_id=commons_id, season=season.code)
-    if adopted is None:
-        return {}
     prefix = seasons.carried_prefix(resource=season.resource)
-    postings = journal.entry(commons_id=commons_id, number=adopted.entry).postings
+    moved = _by_member(_adopting(commons_id, season), prefix)
+    return {member: -amount for member, amount in moved.items()}
+
+
+def allotted_in(commons_id: int, season: seasons.SeasonRecord) -> Mapping[int, int]:
+    """Return each member's part of the allowable as adopted, without what was carried in."""
+    carried = carried_into(commons_id, season)
+    moved: Counter[str] = Counter()
+    for posting in _adopting(commons_id, season):
+        moved[posting.account] += posting.amount
+    accounts = {
+        member: seasons.left_account(season=season.code, member=member)
+        for member in commons.members(commons_id=commons_id)
+    }
     return {
-        int(posting.account.removeprefix(prefix)): -posting.amount
-        for posting in postings
-        if posting.account.startswith(prefix)
+        member: moved[account] - carried.get(member, 0)
+        for member, account in accounts.items()
+        if account in moved
     }
 
 
-def _settlement(commons_id: int, season: seasons.SeasonRecord) -> figures.SettlementFigures:
+def _adopting(commons_id: int, season: seasons.SeasonRecord) -> tuple[Posting, ...]:
+    """Return the postings of the entry that adopted a season's allowable; none before it."""
+    adopted = seasons.allowable(commons_id=commons_id, season=season.code)
+    if adopted is None:
+        return ()
+    return journal.entry(commons_id=commons_id, number=adopted.entry).postings
+
+
+def _settled(commons_id: int, season: seasons.SeasonRecord) -> tuple[Posting, ...]:
     closing = seasons.close_entry(commons_id=commons_id, season=season.code)
     assert closing is not None, "a report is about closed seasons"
-    postings = journal.entry(commons_id=commons_id, number=closing).postings
+    return journal.entry(commons_id=commons_id, number=closing).postings
+
+
+def moved_on(commons_id: int, season: seasons.SeasonRecord) -> Mapping[int, int]:
+    """Return what the close moved on to each member's next season; below zero is owed."""
     prefix = seasons.carried_prefix(resource=season.resource)
-    moved = [each.amount for each in postings if each.account.startswith(prefix)]
-    pool = seasons.pool_account(season=season.code)
-    return figures.SettlementFigures(
-        carried=sum(amount for amount in moved if amount > 0),
-        unclaimed=_sum_on(postings, pool),
-        owed=-sum(amount for amount in moved if amount < 0),
+    return _by_member(_settled(commons_id, season), prefix)
+
+
+def _settlement(
+    commons_id: int, season: seasons.SeasonRecord, *, taken: int
+) -> figures.SettlementFigures:
+    moved = moved_on(commons_id, season).values()
+    allotments = seasons.allotments(commons_id=commons_id, season=season.code)
+    had = sum(allotted_in(commons_id, season).values()) + sum(
+        carried_into(commons_id, season).values()
     )
+    at_close = sum(seasons.taken(commons_id=commons_id, season=season.code).values())
+    return figures.SettlementFigures(
+        given_back=had - sum(allotments.values()),
+        carried=sum(amount for amount in moved if amount > 0),
+        unclaimed=_sum_on(_settled(commons_id, season), seasons.pool_account(season=season.code)),
+        owed=-sum(amount for amount in moved if amount < 0),
+        after_close=taken - at_close,
+    )
+
+
+def _by_member(postings: tuple[Posting, ...], prefix: str) -> dict[int, int]:
+    found: Counter[int] = Counter()
+    for posting in postings:
+        if posting.account.startswith(prefix):
+            found[int(posting.account.removeprefix(prefix))] += posting.amount
+    return dict(found)
 
 
 def _sum_on(postings: tuple[Posting, ...], account: str) -> int:
@@ -195,8 +238,8 @@ def _differs(check: fieldwork.InspectionRecord, slip: Row) -> bool:
 def advice_for_next(reported: Reported) -> tuple[Advice, ...]:
     """Return the advice made for the season after, for each resource that has one."""
     made = (
-        advice.latest(commons_id=reported.commons_id, season=season.code)
-        for season in _next_seasons(reported)
+        advice.latest(commons_id=reported.commons_id, season=after.code)
+        for _, after in next_seasons(reported)
     )
     return tuple(record.advice for record in made if record is not None)
 
@@ -205,35 +248,50 @@ def next_season(reported: Reported) -> tuple[figures.NextSeasonRow, ...]:
     """Return the season after of each resource, where its allowable is adopted."""
     commons_id = reported.commons_id
     rows = []
-    for season in _next_seasons(reported):
-        adopted = seasons.allowable(commons_id=commons_id, season=season.code)
+    for mine, after in next_seasons(reported):
+        adopted = seasons.allowable(commons_id=commons_id, season=after.code)
         if adopted is None:
             continue
-        quota = bylaws.quota(
-            commons_id=commons_id, resource=season.resource, day=season.during.first
-        )
-        allotments = seasons.allotments(commons_id=commons_id, season=season.code)
-        parts = [part for part in allotments.values() if part > 0]
+        quota = bylaws.quota(commons_id=commons_id, resource=after.resource, day=after.during.first)
         rows.append(
             figures.NextSeasonRow(
-                resource=season.resource,
-                opens=season.during.first,
-                closes=season.during.last,
+                resource=after.resource,
+                opens=after.during.first,
+                closes=after.during.last,
                 adopted_by=quota.confirm_by,
                 adopted_on=journal.entry(commons_id=commons_id, number=adopted.entry).day,
                 allowable=adopted.amount,
                 reserve=adopted.reserve,
                 allotted=adopted.amount - adopted.reserve,
-                holders=len(parts),
-                smallest=min(parts, default=0),
-                median=int(median(parts)) if parts else 0,
-                largest=max(parts, default=0),
+                holdings=_next_holdings(commons_id, mine, after),
             )
         )
     return tuple(rows)
 
 
-def _next_seasons(reported: Reported) -> Iterator[seasons.SeasonRecord]:
+def _next_holdings(
+    commons_id: int, mine: seasons.SeasonRecord, after: seasons.SeasonRecord
+) -> tuple[NextHolding, ...]:
+    parts, brought = allotted_in(commons_id, after), carried_into(commons_id, after)
+    moved = moved_on(commons_id, mine)
+    members = commons.members(commons_id=commons_id)
+    return tuple(
+        NextHolding(
+            member=number,
+            household=members[number].household,
+            allotment=parts.get(number, 0),
+            carried_in=max(moved.get(number, 0), 0),
+            owed=max(-moved.get(number, 0), 0),
+            given_back=moved.get(number, 0) - brought.get(number, 0),
+        )
+        for number in sorted({*parts, *brought})
+    )
+
+
+def next_seasons(
+    reported: Reported,
+) -> Iterator[tuple[seasons.SeasonRecord, seasons.SeasonRecord]]:
+    """Yield each season of the report that has one after it, with that."""
     opened = seasons.seasons(commons_id=reported.commons_id).values()
     for mine in reported.seasons:
         later = [
@@ -242,4 +300,4 @@ def _next_seasons(reported: Reported) -> Iterator[seasons.SeasonRecord]:
             if season.resource == mine.resource and season.during.first > mine.during.first
         ]
         if later:
-            yield min(later, key=lambda season: season.during.first)
+            yield mine, min(later, key=lambda season: season.during.first)
