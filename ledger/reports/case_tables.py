@@ -4,6 +4,22 @@ from ledger.reports import outline
 from ledger.reports.figures import CountRow, SeasonFigures
 from ledger.reports.outline import Sheet, Table
 
+STATE_MEANINGS = {
+    "noted": "somebody put it down; nobody has looked yet",
+    "checking": "a person looks whether the facts hold",
+    "set aside": "closed without a decision; nothing follows",
+    "told": "the member has been told and has time to answer",
+    "answered": "the member has answered",
+    "unanswered": "the time to answer is over",
+    "decided": "decided; the member is yet to be given the reasons",
+    "appeal open": "decided; the member may still appeal",
+    "under appeal": "the member has appealed",
+    "overturned": "the appeal took the decision back; nothing follows",
+    "final": "the decision stands; something of it is still to be done, such as paying",
+    "done": "the decision stands, and all of it is carried out",
+}
+"""What each state of a case means, for those who were not there."""
+
 _CASE_OUTCOMES = ("Opened", "Set aside", "Decided, stands", "Overturned on appeal", "Undecided")
 
 
@@ -24,7 +40,10 @@ def findings(figures: SeasonFigures) -> Table:
             for row in figures.findings
         ),
         empty="Nothing was found.",
-        note="A later entry, such as a correction, may withdraw a finding.",
+        note=(
+            "A later entry, such as a correction, may withdraw a finding. Every finding stands one"
+            " by one in the annex."
+        ),
     )
 
 
@@ -51,11 +70,19 @@ def case_steps(figures: SeasonFigures) -> Table:
 
 
 def case_states(figures: SeasonFigures) -> Table:
-    """Return the cases by the state they are in."""
-    return _counts(
-        figures.cases.states,
+    """Return the cases by the state they are in, and what that means."""
+    return Table(
+        sheet=Sheet.CASES,
         caption="Cases by present state",
-        columns=("State", "Cases"),
+        columns=("State", "Cases", "What it means"),
+        rows=tuple(
+            (
+                outline.text(row.label),
+                outline.count(row.count),
+                outline.text(STATE_MEANINGS.get(row.label, "")),
+            )
+            for row in figures.cases.states
+        ),
         empty="No case was opened.",
     )
 

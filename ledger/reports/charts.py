@@ -186,7 +186,7 @@ def _mark_projection(axes: "Axes", history: StockHistory) -> None:
         return
     border = history.first_projected - 0.5
     axes.axvline(border, color=canvas.BLACK, linewidth=0.8, gid="projection")
-    for words, side, shift in (("past", "right", -3), ("under the advice", "left", 3)):
+    for words, side, shift in (("past", "right", -3), ("under the rule", "left", 3)):
         axes.annotate(
             words,
             (border, 1.0),

@@ -1,15 +1,15 @@
 """The tables of dues, duties, reporting, inspections and outside orders."""
 
 from ledger.reports import numbers, outline, resource_cells
-from ledger.reports.figures import SeasonFigures
+from ledger.reports.figures import INSTEAD_OF_WORK, SeasonFigures
 from ledger.reports.outline import Cell, Sheet, Table
 
 
 def dues(figures: SeasonFigures) -> Table:
-    """Return the dues in money by kind."""
+    """Return the dues in money by kind, without what came in place of work."""
     return Table(
         sheet=Sheet.DUES,
-        caption=f"Dues in {figures.currency}",
+        caption=f"Fines and other dues in {figures.currency}",
         columns=("Kind", "Number", "Charged", "Paid", "Open"),
         rows=tuple(
             (
@@ -21,28 +21,53 @@ def dues(figures: SeasonFigures) -> Table:
                 ),
             )
             for row in figures.dues
+            if row.kind != INSTEAD_OF_WORK
         ),
         empty="No dues in money were charged.",
     )
 
 
+def instead_of_work(figures: SeasonFigures) -> Table:
+    """Return the payments that came in place of work, which are no dues."""
+    return Table(
+        sheet=Sheet.DUES,
+        caption=f"Payments in place of work in {figures.currency}",
+        columns=("Kind", "Number", "Paid"),
+        rows=tuple(
+            (
+                outline.text(row.kind),
+                outline.count(row.count),
+                outline.money(row.paid, currency=figures.currency),
+            )
+            for row in figures.dues
+            if row.kind == INSTEAD_OF_WORK
+        ),
+        empty="Nothing was paid in place of work.",
+    )
+
+
 def restitution(figures: SeasonFigures) -> Table:
-    """Return what is given back in the resource itself."""
+    """Return what cases took off members' allotments."""
     rows = []
     for row in figures.restitution:
         resource = figures.resource(row.resource)
-        amounts = (
-            resource_cells.amount(resource, value) for value in (row.charged, row.paid, row.open)
-        )
         rows.append(
-            (outline.text(resource_cells.in_unit(resource)), outline.count(row.count), *amounts)
+            (
+                outline.text(resource_cells.in_unit(resource)),
+                outline.count(row.count),
+                resource_cells.amount(resource, row.amount),
+            )
         )
     return Table(
         sheet=Sheet.DUES,
-        caption="Given back in the resource itself",
-        columns=("Resource", "Number", "Charged", "Given back", "Open"),
+        caption="Given back, off members' allotments",
+        columns=("Resource", "Times", "Taken off"),
         rows=outline.aligned(rows),
-        empty="Nothing is to be given back in the resource itself.",
+        empty="Nothing is given back off an allotment.",
+        note=(
+            "What was taken beyond a limit comes off the member's own allotment and is left to all:"
+            " off the season's, or where that was closed by then, off the next."
+        ),
     )
 
 
@@ -53,16 +78,17 @@ def duties(figures: SeasonFigures) -> Table:
     unit = ""
     if duty is not None:
         unit = f", {numbers.unit_word(duty.unit)}"
-        amounts = (duty.owed, duty.rendered, duty.replaced, duty.short)
+        amounts = (duty.owed, duty.rendered, duty.replaced, duty.short, duty.beyond)
         cells = (outline.amount(value, base=duty.base, unit=duty.unit) for value in amounts)
         rows = ((outline.text("All members"), *cells, outline.count(duty.members_short)),)
-    titles = ("Owed", "Given as work", "Replaced by money", "Short")
+    titles = ("Owed", "Given as work", "Replaced by money", "Short", "Given beyond what was owed")
     return Table(
         sheet=Sheet.DUES,
         caption="Duties of work",
         columns=("", *(f"{title}{unit}" for title in titles), "Members short"),
         rows=rows,
         empty="The book asks for no work.",
+        note="What was given, replaced and is short is what was owed and what some gave beyond it.",
     )
 
 

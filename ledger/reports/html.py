@@ -18,12 +18,16 @@ def season_html(figures: SeasonFigures, /) -> str:
     # Its own engine: the page is a document, whatever the settings say of the site's templates.
     engine = Engine(dirs=[str(TEMPLATES)])
     page = engine.get_template("season.html")
-    shown = {"report": report, "sections": map(_drawn, report.sections)}
+    shown = {"report": report, "sections": [(part, _told(part)) for part in report.sections]}
     return page.render(Context(shown, use_l10n=False))
 
 
-def _drawn(section: Section) -> tuple[Section, list[tuple[Chart, str]]]:
-    return section, [(chart, _address(chart)) for chart in section.charts]
+def _told(section: Section) -> list[tuple[str, list[tuple[Chart, str]]]]:
+    """Return a section's sentences, each with the charts after it and their data addresses."""
+    return [
+        (sentence, [(chart, _address(chart)) for chart in charts])
+        for sentence, charts in section.told
+    ]
 
 
 def _address(chart: Chart) -> str:

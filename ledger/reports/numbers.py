@@ -11,6 +11,8 @@ _UNIT_WORDS = {"1": "", "m3": "m³", "1/a": "a year"}
 # A number and its unit stay on one line.
 _NO_BREAK = "\u00a0"
 _HALF_OF_A_TWENTIETH = 0.025
+# Nearer to nought or one than this, a tenth of a percent would say a certainty that nobody has.
+_LEAST = 0.001
 
 
 def unit_word(code: str) -> str:
@@ -31,6 +33,15 @@ def amount(value: int, *, base: str, unit: str) -> str:
 def amount_with_unit(value: int, *, base: str, unit: str) -> str:
     """Write base units in the unit of reading, with it: 43000 g in kg is ``43 kg``, not broken."""
     return f"{amount(value, base=base, unit=unit)}{_NO_BREAK}{unit_word(unit)}".rstrip()
+
+
+def whole_amount(value: int, *, base: str, unit: str) -> str:
+    """Write an amount for a sentence, rounded to whole units, with the unit; below one, exactly."""
+    exact = reading(value, base=base, unit=unit)
+    if abs(exact) < 1:
+        return amount_with_unit(value, base=base, unit=unit)
+    whole = quantities.rounded(exact, quantities.Rounding.HALF_UP)
+    return f"{whole:,}{_NO_BREAK}{unit_word(unit)}".rstrip()
 
 
 def rough_amount(value: int, *, base: str, unit: str) -> str:
@@ -62,11 +73,26 @@ def percent(share: Fraction | float) -> str:
 
 
 def chance(probability: float) -> str:
-    """Write a chance as people count and as a percentage: 0.146 is ``3 in 20 (14.6 %)``."""
+    """Write a chance as people count and as a percentage: 0.146 is ``3 in 20 (14.6 %)``.
+
+    What is counted over runs may be in none or in every one of them.
+    """
+    if probability in (0, 1):
+        words = "in every run" if probability else "in no run"
+        return f"{words} ({percent(probability)})".replace(" ", _NO_BREAK)
+    return reckoned_chance(probability)
+
+
+def reckoned_chance(probability: float) -> str:
+    """Write a chance that no run was counted for, so that it is never quite nought or one."""
+    if probability < _LEAST:
+        return f"under {percent(_LEAST)}".replace(" ", _NO_BREAK)
+    if probability > 1 - _LEAST:
+        return f"over {percent(1 - _LEAST)}".replace(" ", _NO_BREAK)
     if probability < _HALF_OF_A_TWENTIETH:
-        words = "under 1 in 40" if probability else "in no run"
+        words = "under 1 in 40"
     elif probability > 1 - _HALF_OF_A_TWENTIETH:
-        words = "over 39 in 40" if probability < 1 else "in every run"
+        words = "over 39 in 40"
     else:
         count = quantities.rounded(probability * 20, quantities.Rounding.HALF_UP)
         words = f"{count} in 20"
@@ -90,6 +116,11 @@ def sentence_case(words: str) -> str:
 def many(count: int, *, one: str, more: str) -> str:
     """Write a count with its noun: ``1 slip``, ``4,512 slips``, ``no slips``."""
     return f"{count:,} {one if count == 1 else more}" if count else f"no {more}"
+
+
+def was(count: int) -> str:
+    """Write a count with its verb: ``1 was``, ``4 were``."""
+    return f"{count:,} {'was' if count == 1 else 'were'}"
 
 
 def day(value: date) -> str:

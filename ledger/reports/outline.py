@@ -20,6 +20,7 @@ class Sheet(StrEnum):
     SUMMARY = "Summary"
     BY_DAY = "Use by day"
     STANDING = "Standing"
+    MEMBERS = "Work and dues"
     FINDINGS = "Findings"
     CASES = "Cases"
     DUES = "Dues"
@@ -30,6 +31,9 @@ class Sheet(StrEnum):
     OBSERVATIONS = "Observations"
     SETTLEMENT = "Settlement"
     NEXT_SEASON = "Next season"
+    NEXT_MEMBERS = "Next allotments"
+    FINDING_LIST = "Findings one by one"
+    CASE_LIST = "Cases one by one"
     CAUTIONS = "Cautions"
 
 
@@ -46,7 +50,7 @@ class Kind(StrEnum):
 class Cell:
     """One figure: as written, and as the typed value that a sheet keeps.
 
-    ``fill`` from 0 to 4 shades the cell as a second channel; ``framed`` draws a bold frame.
+    ``fill`` from 0 to 5 shades the cell as a second channel; ``framed`` draws a bold frame.
     """
 
     kind: Kind
@@ -100,12 +104,16 @@ class Column:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Chart:
-    """A drawn chart: the sentence that it shows is ``alt``."""
+    """A drawn chart: the sentence that it shows is ``alt``.
+
+    It stands after so many of its section's sentences as ``after`` says.
+    """
 
     key: str
     title: str
     alt: str
     svg: str
+    after: int
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -131,11 +139,23 @@ class Section:
     charts: tuple[Chart, ...] = ()
     tables: tuple[Table, ...] = ()
 
+    @property
+    def told(self) -> tuple[tuple[str, tuple[Chart, ...]], ...]:
+        """Return the sentences, each with the charts that stand after it."""
+        return tuple(
+            (sentence, tuple(chart for chart in self.charts if chart.after == place))
+            for place, sentence in enumerate(self.sentences, start=1)
+        )
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Report:
-    """The whole report: its title, what it rests on, and its sections in order."""
+    """The whole report: its title, what it rests on, and its sections in order.
 
+    ``mark`` is what every sheet of it must say of itself, or empty.
+    """
+
+    mark: str
     commons: str
     season: str
     title: str
@@ -153,6 +173,11 @@ def _kind(cells: Sequence[Cell]) -> Kind:
 def text(value: str) -> Cell:
     """Return a cell of words."""
     return Cell(kind=Kind.TEXT, text=value, value=value)
+
+
+def word(value: str) -> Cell:
+    """Return a cell of a word in a column of numbers, aligned as they are."""
+    return Cell(kind=Kind.NUMBER, text=value, value=value)
 
 
 def blank() -> Cell:
@@ -180,6 +205,11 @@ def tenths(value: Fraction | None) -> Cell:
     if value is None:
         return blank()
     return Cell(kind=Kind.NUMBER, text=numbers.tenths(value), value=float(value))
+
+
+def hundredths(value: Fraction) -> Cell:
+    """Return a cell of a number written to two decimals and kept as it is."""
+    return Cell(kind=Kind.NUMBER, text=f"{float(value):,.2f}", value=float(value))
 
 
 def amount(value: int, *, base: str, unit: str) -> Cell:
@@ -231,12 +261,13 @@ def aligned(rows: Iterable[tuple[Cell, ...]]) -> tuple[tuple[Cell, ...], ...]:
 
 
 def _decimals(cell: Cell) -> int:
-    return len(cell.text.partition(".")[2]) if cell.kind is Kind.NUMBER else 0
+    is_number = cell.kind is Kind.NUMBER and not isinstance(cell.value, str)
+    return len(cell.text.partition(".")[2]) if is_number else 0
 
 
 def _padded(cell: Cell, *, places: int) -> Cell:
     missing = places - _decimals(cell)
-    if cell.kind is not Kind.NUMBER or cell.value is None or not missing:
+    if not isinstance(cell.value, int | float) or cell.kind is not Kind.NUMBER or not missing:
         return cell
     point = "" if "." in cell.text else "."
     return replace(cell, text=f"{cell.text}{point}{'0' * missing}")

@@ -21,6 +21,8 @@ def season_pdf(figures: SeasonFigures, /) -> bytes:
     import matplotlib
     import typst
 
+    # The standard knows no part of a second.
+    stamp = figures.made_at.replace(microsecond=0)
     compiler = typst.Compiler(
         TEMPLATE,
         # The charts are set in the font that they were measured with, which comes with matplotlib.
@@ -29,9 +31,9 @@ def season_pdf(figures: SeasonFigures, /) -> bytes:
         sys_inputs={"report": json.dumps(plain(sections.report(figures)), ensure_ascii=False)},
     )
     try:
-        made = compiler.compile(format="pdf", pdf_standards="ua-1", timestamp=figures.made_at)
+        made = compiler.compile(format="pdf", pdf_standards="ua-1", timestamp=stamp)
     except typst.TypstError:
-        made = compiler.compile(format="pdf", timestamp=figures.made_at)
+        made = compiler.compile(format="pdf", timestamp=stamp)
     assert isinstance(made, bytes), "one document without an output file is one run of bytes"
     return made
 
@@ -41,6 +43,11 @@ def plain(report: Report) -> dict[str, Any]:
     record = dataclasses.asdict(report)
     del record["made_at"]
     for section, shown in zip(record["sections"], report.sections, strict=True):
+        del section["charts"], section["sentences"]
+        section["told"] = [
+            {"sentence": sentence, "charts": [dataclasses.asdict(chart) for chart in charts]}
+            for sentence, charts in shown.told
+        ]
         section["tables"] = [_table(table) for table in shown.tables]
     return record
 

@@ -6,6 +6,9 @@ from ledger.reports import numbers, outline
 from ledger.reports.figures import ResourceFigures
 from ledger.reports.outline import Cell
 
+RESOURCES_ACROSS = 2
+"""A table of members with more resources side by side does not fit across a sheet of A4."""
+
 
 def in_unit(resource: ResourceFigures) -> str:
     """Return the heading of a resource's amounts: its name and unit."""

@@ -4,14 +4,16 @@ import bisect
 import math
 
 from governance.advice.records import Advice, EstimateRow, RiskRow, StockHistory, SurveyRisk
-from ledger.reports import numbers, outline
+from ledger.reports import advice_words, numbers, outline
 from ledger.reports.figures import ResourceFigures, SeasonFigures
 from ledger.reports.outline import Cell, Sheet, Table
 
 # Chances from which a cell is a shade darker; the first is where people count 1 in 20.
-_FILL_FROM = (0.025, 0.1, 0.25, 0.5)
+_FILL_FROM = (0.025, 0.1, 0.3, 0.6, 0.9)
 _DARKER = "A darker cell is a greater chance."
-_FRAMED = "A bold frame marks a chance beyond what the book accepts."
+_FRAMED = (
+    "A bold frame marks a fixed take whose chance is beyond what the book accepts of its rule."
+)
 
 
 def proposal(advice: Advice, *, resource: ResourceFigures) -> Table:
@@ -36,21 +38,22 @@ def proposal(advice: Advice, *, resource: ResourceFigures) -> Table:
     )
 
 
-def estimates(advice: Advice, *, resource: ResourceFigures) -> Table:
+def estimates(figures: SeasonFigures, advice: Advice) -> Table:
     """Return what was estimated about the resource, and the reference points."""
+    name = figures.resource(advice.resource).name
     return Table(
         sheet=Sheet.ADVICE,
-        caption=f"What is estimated about {resource.name}",
+        caption=f"What is estimated about {name}",
         columns=("Name", "Meaning", "Value", "Low", "High", "Unit"),
-        rows=tuple(map(_estimate, advice.estimates + advice.reference_points)),
+        rows=tuple(_estimate(figures, row) for row in advice.estimates + advice.reference_points),
         empty="Nothing was estimated.",
         note=f"Low and high: {advice.interval}." if advice.interval else "",
     )
 
 
-def _estimate(row: EstimateRow) -> tuple[Cell, ...]:
+def _estimate(figures: SeasonFigures, row: EstimateRow) -> tuple[Cell, ...]:
     return (
-        outline.text(row.name),
+        outline.text(advice_words.readable(figures, row.name)),
         outline.text(row.meaning),
         outline.estimate(row.value),
         outline.estimate(row.low),
@@ -76,7 +79,10 @@ def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
     rows = sorted(table.rows, key=lambda row: row.candidate)
     return Table(
         sheet=Sheet.RISK,
-        caption=f"Risk table of {resource.name}: what follows from each allowable",
+        caption=(
+            f"Risk table of {resource.name}: a comparison, as if this were taken every year"
+            " whatever comes"
+        ),
         columns=(
             f"Allowable, {unit}",
             "What it is",
@@ -94,7 +100,7 @@ def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
 
 def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
     unit = numbers.unit_word(resource.unit)
-    found = numbers.rough_amount(table.found, base=resource.base, unit=resource.unit)
+    found = numbers.amount_with_unit(table.found, base=resource.base, unit=resource.unit)
     return Table(
         sheet=Sheet.RISK,
         caption=f"Risk table of {resource.name}: what the survey's error means",
@@ -107,7 +113,12 @@ def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
             (
                 outline.amount(row.candidate, base=resource.base, unit=resource.unit),
                 outline.text(row.label),
-                _chance(row.chance_above, framed=False),
+                _cell(
+                    row.chance_above,
+                    words=numbers.reckoned_chance(row.chance_above)
+                    if row.candidate
+                    else numbers.percent(0),
+                ),
             )
             for row in table.rows
         ),
@@ -115,7 +126,9 @@ def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
         note=(
             f"The survey found {found}, with an error of"
             f" {numbers.percent(table.variation)} (coefficient of variation, all grounds together)."
-            " What really stands is taken as lognormal around that."
+            " What really stands is taken as lognormal around that. A take at the rate itself is as"
+            " likely to be above the rate of what really stands as below it, so a chance of a half"
+            " there is no alarm."
         ),
         looks=_DARKER,
     )
@@ -137,9 +150,13 @@ def _risk(row: RiskRow, *, resource: ResourceFigures) -> tuple[Cell, ...]:
 
 
 def _chance(probability: float, *, framed: bool) -> Cell:
+    return _cell(probability, words=numbers.chance(probability), framed=framed)
+
+
+def _cell(probability: float, *, words: str, framed: bool = False) -> Cell:
     return Cell(
         kind=outline.Kind.PERCENT,
-        text=numbers.chance(probability),
+        text=words,
         value=probability,
         fill=bisect.bisect(_FILL_FROM, probability),
         framed=framed,
@@ -153,11 +170,10 @@ def _risk_note(advice: Advice, *, resource: ResourceFigures) -> str:
     # The widest half-interval of a share seen in so many independent runs, at 95 %.
     error = 1.96 * 0.5 / math.sqrt(table.runs)
     sentences = [
-        f"The level is {limit}. Each allowable is tried as if taken every year whatever comes; set"
-        f" anew each year by the rule, the chance is {numbers.chance(table.under_rule)}."
+        f"{numbers.sentence_case(advice_words.level(table.limit_words))}, is {limit}. A row says"
+        " what would follow if its allowable were taken every year whatever comes; nobody proposes"
+        f" that. {advice_words.risk(table)}"
     ]
-    if table.at_most is not None:
-        sentences.append(f"The book accepts a chance of at most {numbers.percent(table.at_most)}.")
     sentences.append(
         f"Every row was tried on the same {table.runs:,} runs; the counting alone leaves a chance"
         f" uncertain by at most {numbers.tenths(error * 100)} points of a hundred."
@@ -175,6 +191,11 @@ def stock(advice: Advice, *, resource: ResourceFigures) -> Table:
         groups=(("", 4), ("50 of 100 runs", 2), ("80 of 100 runs", 2), ("95 of 100 runs", 2)),
         rows=() if history is None else _stock_rows(history, resource=resource),
         empty="The method of this advice estimates no course of the stock.",
+        note=(
+            "Medians and ranges are those of the runs; the most likely value of the stock stands"
+            " among the estimates and lies a little off the median. Projected years have the take"
+            " set anew each season by the rule."
+        ),
     )
 
 

@@ -4,8 +4,10 @@ from dataclasses import replace
 
 from governance.advice.records import Advice
 from ledger.reports import (
+    advice_words,
     case_tables,
     charts,
+    detail_tables,
     duty_tables,
     numbers,
     resource_tables,
@@ -16,10 +18,13 @@ from ledger.reports import (
 from ledger.reports.figures import ResourceFigures, SeasonFigures, digest
 from ledger.reports.outline import Chart, PointList, Report, Section, Sheet
 
+DEMO_MARK = "Invented demo: no real commons, no real people"
+
 
 def report(figures: SeasonFigures) -> Report:
     """Return the season report of the figures, charts drawn."""
     return Report(
+        mark=DEMO_MARK if figures.is_demo else "",
         commons=figures.commons,
         season=figures.season,
         title=f"Season report {figures.season}",
@@ -56,7 +61,7 @@ def report(figures: SeasonFigures) -> Report:
                 heading="Next season",
                 sheet=Sheet.NEXT_SEASON,
                 sentences=words.next_season(figures),
-                tables=(use_tables.next_season(figures),),
+                tables=(use_tables.next_season(figures), *use_tables.next_members(figures)),
             ),
             Section(
                 key="cautions",
@@ -69,6 +74,18 @@ def report(figures: SeasonFigures) -> Report:
                 heading="How to recompute this report",
                 sheet=Sheet.CAUTIONS,
                 lists=(PointList(title="", points=words.recompute(figures)),),
+            ),
+            Section(
+                key="every-finding",
+                heading="Annex: every finding",
+                sheet=Sheet.FINDING_LIST,
+                tables=(detail_tables.findings(figures),),
+            ),
+            Section(
+                key="every-case",
+                heading="Annex: every case",
+                sheet=Sheet.CASE_LIST,
+                tables=(detail_tables.cases(figures),),
             ),
             _annex(figures),
         ),
@@ -91,7 +108,9 @@ def _summary(figures: SeasonFigures) -> Section:
                     words.duties(figures),
                     words.reporting(figures),
                     words.inspections(figures),
-                    *(words.advice(figures, row) for row in figures.advice),
+                    *(advice_words.advice(figures, row) for row in figures.advice),
+                    *words.next_season(figures),
+                    "Amounts in sentences are rounded to whole units; the tables have them exact.",
                 ),
             ),
         ),
@@ -107,18 +126,22 @@ def _use(figures: SeasonFigures) -> Section:
             f"{words.use(resource)} {words.left(resource)} {words.window(resource)}"
             for resource in figures.resources
         ),
-        charts=tuple(_take_chart(figures, resource) for resource in figures.resources),
+        charts=tuple(
+            _take_chart(figures, resource, after=place)
+            for place, resource in enumerate(figures.resources, start=1)
+        ),
         tables=(use_tables.use(figures), *map(use_tables.zones, figures.resources)),
     )
 
 
-def _take_chart(figures: SeasonFigures, resource: ResourceFigures) -> Chart:
+def _take_chart(figures: SeasonFigures, resource: ResourceFigures, *, after: int) -> Chart:
     sentence = words.use(resource)
     return Chart(
         key=f"take-{resource.code}",
         title=f"Take of {resource.name} against the allowable",
         alt=sentence,
         svg=charts.take_svg(resource=resource, proof=figures.proof, description=sentence),
+        after=after,
     )
 
 
@@ -127,7 +150,12 @@ def _findings(figures: SeasonFigures) -> Section:
         key="findings",
         heading="Findings and cases",
         sheet=Sheet.FINDINGS,
-        sentences=(words.findings(figures), words.cases(figures), *words.procedure(figures)),
+        sentences=(
+            words.findings(figures),
+            *words.tolerance(figures),
+            words.cases(figures),
+            *words.procedure(figures),
+        ),
         tables=(
             case_tables.findings(figures),
             case_tables.case_steps(figures),
@@ -146,6 +174,7 @@ def _dues(figures: SeasonFigures) -> Section:
         sentences=(words.dues(figures), words.duties(figures)),
         tables=(
             duty_tables.dues(figures),
+            duty_tables.instead_of_work(figures),
             duty_tables.restitution(figures),
             duty_tables.duties(figures),
         ),
@@ -176,9 +205,15 @@ def _resource(figures: SeasonFigures, advice: Advice) -> Section:
         key=f"resource-{resource.code}",
         heading=f"The resource: {resource.name}",
         sheet=Sheet.ADVICE,
-        sentences=(words.advice(figures, advice), *words.method(advice)),
+        sentences=(
+            advice_words.advice(figures, advice),
+            *advice_words.method(figures, advice),
+        ),
         lists=tuple(
-            PointList(title=title, points=points)
+            PointList(
+                title=title,
+                points=tuple(advice_words.readable(figures, point) for point in points),
+            )
             for title, points in (
                 ("Bounds of the book that moved it", advice.bounds),
                 ("Why", advice.reasons),
@@ -188,7 +223,7 @@ def _resource(figures: SeasonFigures, advice: Advice) -> Section:
         ),
         tables=(
             resource_tables.proposal(advice, resource=resource),
-            resource_tables.estimates(advice, resource=resource),
+            resource_tables.estimates(figures, advice),
             resource_tables.risk(advice, resource=resource),
         ),
     )
@@ -200,7 +235,8 @@ def _resource(figures: SeasonFigures, advice: Advice) -> Section:
             f" {advice.stock.runs}."
         )
         return replace(section, sentences=(*section.sentences, refusal))
-    sentence = words.stock(advice, resource=resource)
+    sentence = advice_words.stock(advice, resource=resource)
+    sentences = (*section.sentences, sentence)
     chart = Chart(
         key=f"stock-{resource.code}",
         title=f"Stock of {resource.name} by year",
@@ -213,8 +249,9 @@ def _resource(figures: SeasonFigures, advice: Advice) -> Section:
             proof=figures.proof,
             description=sentence,
         ),
+        after=len(sentences),
     )
-    return replace(section, sentences=(*section.sentences, sentence), charts=(chart,))
+    return replace(section, sentences=sentences, charts=(chart,))
 
 
 def _annex(figures: SeasonFigures) -> Section:

@@ -21,7 +21,11 @@ def season_text(figures: SeasonFigures, /, *, keys: tuple[str, ...]) -> Iterator
 
     :param keys: section keys, such as ``summary``, or beginnings of them, such as ``resource-*``.
     """
-    for section in sections.report(figures).sections:
+    report = sections.report(figures)
+    if report.mark:
+        yield ""
+        yield report.mark
+    for section in report.sections:
         if any(_matches(section.key, key) for key in keys):
             for line in _section(section):
                 yield line.replace(_NO_BREAK, " ")

@@ -1,11 +1,15 @@
-"""The tables of a season's use, its settlement, and the season that follows."""
+"""The tables of a season's use and its settlement, and of the season that follows."""
 
-from collections.abc import Callable
+import statistics
+from collections.abc import Callable, Iterator
 from itertools import accumulate
 
 from ledger.reports import numbers, outline, resource_cells
 from ledger.reports.figures import NextSeasonRow, ResourceFigures, SeasonFigures
 from ledger.reports.outline import Cell, Sheet, Table
+from ledger.reports.resource_cells import RESOURCES_ACROSS
+
+_NEXT_COLUMNS = ("Allotted", "Carried in", "Comes off", "May take")
 
 
 def use(figures: SeasonFigures) -> Table:
@@ -37,6 +41,10 @@ def use(figures: SeasonFigures) -> Table:
             row("Members entitled to take", lambda r: outline.count(r.members_entitled)),
         ),
         empty="The commons has no resource.",
+        note=(
+            "Left is the allowable and what was carried in, less what was taken; the settlement"
+            " says where it went."
+        ),
     )
 
 
@@ -100,21 +108,33 @@ def by_day(figures: SeasonFigures) -> Table:
 
 
 def settlement(figures: SeasonFigures) -> Table:
-    """Return how each resource's season was settled."""
+    """Return how what was left of each resource splits, a column each."""
+    resources = figures.resources
+
+    def row(label: str, value: Callable[[ResourceFigures], int]) -> tuple[Cell, ...]:
+        return outline.text(label), *(
+            resource_cells.amount(each, value(each)) for each in resources
+        )
+
+    rows = [
+        row("Kept in reserve", lambda r: r.reserve),
+        row("Given back in the season, off allotments", lambda r: r.settlement.given_back),
+        row("Carried to the next season", lambda r: r.settlement.carried),
+        row("Unclaimed, to the pool", lambda r: r.settlement.unclaimed),
+        row("less what is owed from the next season", lambda r: -r.settlement.owed),
+    ]
+    if any(resource.settlement.after_close for resource in resources):
+        rows.append(
+            row("less what was entered after the close", lambda r: -r.settlement.after_close)
+        )
+    rows.append(row("Left of the season: all of that", lambda r: r.left))
     return Table(
         sheet=Sheet.SETTLEMENT,
         caption="Settlement of the season",
-        columns=("Resource", "Carried to the next season", "Unclaimed, to the pool", "Owed back"),
-        rows=outline.aligned(
-            (
-                outline.text(resource_cells.in_unit(resource)),
-                resource_cells.amount(resource, resource.settlement.carried),
-                resource_cells.amount(resource, resource.settlement.unclaimed),
-                resource_cells.amount(resource, resource.settlement.owed),
-            )
-            for resource in figures.resources
-        ),
+        columns=("", *map(resource_cells.in_unit, resources)),
+        rows=outline.aligned(rows) if resources else (),
         empty="The commons has no resource.",
+        note="Left is the allowable and what was carried in, less what was taken.",
     )
 
 
@@ -135,23 +155,84 @@ def next_season(figures: SeasonFigures) -> Table:
         caption="The next season as adopted",
         columns=("", *(resource_cells.in_unit(figures.resource(row.resource)) for row in rows)),
         rows=(
-            line("Adopted by", lambda row: outline.text(row.adopted_by)),
+            line("Adopted by", lambda row: outline.word(row.adopted_by)),
             line("Adopted on", lambda row: outline.day(row.adopted_on)),
             line("First day", lambda row: outline.day(row.opens)),
             line("Last day", lambda row: outline.day(row.closes)),
             *outline.aligned(
                 (
-                    amounts("Allowable", lambda row: row.allowable),
-                    amounts("of it kept in reserve", lambda row: row.reserve),
-                    amounts("of it allotted to members", lambda row: row.allotted),
-                    amounts("Smallest allotment", lambda row: row.smallest),
-                    amounts("Median allotment", lambda row: row.median),
-                    amounts("Largest allotment", lambda row: row.largest),
+                    amounts("Allowable, adopted", lambda row: row.allowable),
+                    amounts("less the reserve", lambda row: -row.reserve),
+                    amounts("Allotted to members", lambda row: row.allotted),
+                    amounts("and carried in", lambda row: row.carried_in),
+                    amounts("less what was taken beyond a measure", lambda row: -row.owed),
+                    amounts(
+                        "less what was given back since the close", lambda row: -row.given_back
+                    ),
+                    amounts("Members may take in all", lambda row: row.may_take),
+                    amounts("The least that one may take", lambda row: min(row.shares, default=0)),
+                    amounts("The median of what each may take", _median),
+                    amounts("The most that one may take", lambda row: max(row.shares, default=0)),
                 )
             ),
-            line("Members with an allotment", lambda row: outline.count(row.holders)),
+            line("Members who may take some", lambda row: outline.count(len(row.shares))),
         )
         if rows
         else (),
         empty="No allowable of the next season is adopted yet.",
+    )
+
+
+def _median(row: NextSeasonRow) -> int:
+    """Return the median of what each may take, rounded down."""
+    return int(statistics.median(row.shares)) if row.shares else 0
+
+
+def next_members(figures: SeasonFigures) -> tuple[Table, ...]:
+    """Return what each member may take in the next season, by number."""
+    return tuple(
+        _next_members(figures, figures.next_season[start : start + RESOURCES_ACROSS])
+        for start in range(0, len(figures.next_season), RESOURCES_ACROSS)
+    )
+
+
+def _next_members(figures: SeasonFigures, rows: tuple[NextSeasonRow, ...]) -> Table:
+    resources = [figures.resource(row.resource) for row in rows]
+    held = [{each.member: each for each in row.holdings} for row in rows]
+    household = {each.member: each.household for row in rows for each in row.holdings}
+
+    def cells(member: int) -> Iterator[Cell]:
+        yield outline.label_number(member)
+        yield outline.label_number(household[member])
+        for resource, of in zip(resources, held, strict=True):
+            own = of.get(member)
+            if own is None:
+                yield from (outline.blank(),) * len(_NEXT_COLUMNS)
+                continue
+            off = -own.owed - own.given_back
+            for value in (own.allotment, own.carried_in, off, own.may_take):
+                yield resource_cells.amount(resource, value)
+
+    def sums() -> Iterator[Cell]:
+        yield from (outline.word("All"), outline.blank())
+        for resource, row in zip(resources, rows, strict=True):
+            for value in (row.allotted, row.carried_in, -row.owed - row.given_back, row.may_take):
+                yield resource_cells.amount(resource, value)
+
+    return Table(
+        sheet=Sheet.NEXT_MEMBERS,
+        caption="What each member may take in the next season",
+        columns=("No.", "House", *_NEXT_COLUMNS * len(rows)),
+        groups=(
+            ("", 2),
+            *((resource_cells.in_unit(each), len(_NEXT_COLUMNS)) for each in resources),
+        ),
+        rows=outline.aligned(
+            (*(tuple(cells(member)) for member in sorted(household)), tuple(sums()))
+        ),
+        empty="Nobody has an allotment.",
+        note=(
+            "No. is the member's number, House the household's. Comes off: what was taken beyond"
+            " the measure, and what was given back since the close."
+        ),
     )

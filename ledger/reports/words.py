@@ -2,14 +2,20 @@
 
 from fractions import Fraction
 
-from governance.advice.records import Advice
 from ledger.reports import numbers
-from ledger.reports.figures import ResourceFigures, SeasonFigures, digest
+from ledger.reports.figures import (
+    INSTEAD_OF_WORK,
+    MoneyDueRow,
+    NextSeasonRow,
+    ResourceFigures,
+    SeasonFigures,
+    digest,
+)
 from ledger.reports.numbers import many
 
 
 def _with_unit(resource: ResourceFigures, value: int) -> str:
-    return numbers.amount_with_unit(value, base=resource.base, unit=resource.unit)
+    return numbers.whole_amount(value, base=resource.base, unit=resource.unit)
 
 
 def use(resource: ResourceFigures) -> str:
@@ -46,16 +52,28 @@ def window(resource: ResourceFigures) -> str:
 
 
 def findings(figures: SeasonFigures) -> str:
-    """Say how many findings there are."""
+    """Say how many findings there are, and that they accuse nobody."""
     found = sum(row.found for row in figures.findings)
     if not found:
         return "No entry was found that does not fit the bylaws."
-    standing = sum(row.standing for row in figures.findings)
     withdrawn = sum(row.withdrawn for row in figures.findings)
+    later = ""
+    if withdrawn:
+        later = f"; {numbers.was(withdrawn)} withdrawn after a later entry, such as a correction"
     return (
-        f"The bylaws and the entries give {many(found, one='finding', more='findings')}:"
-        f" {standing:,} stand and {withdrawn:,} {'was' if withdrawn == 1 else 'were'} withdrawn"
-        " after later entries."
+        f"{many(found, one='finding was', more='findings were')} computed{later}. A finding says"
+        " that entries and a clause do not fit together, not that anybody is guilty."
+    )
+
+
+def tolerance(figures: SeasonFigures) -> tuple[str, ...]:
+    """Say where a finding begins and what is given back, if there is any finding."""
+    if not figures.findings:
+        return ()
+    return (
+        "A finding begins beyond the tolerance of its clause, where it has one; the breach is what"
+        " lies beyond that. What is given back is all that lies beyond the bare limit: it is taken"
+        " off the member's allotment and left to all, and no catch goes back.",
     )
 
 
@@ -71,11 +89,14 @@ def cases(figures: SeasonFigures) -> str:
             *((r.set_aside, r.upheld, r.overturned, r.undecided) for r in steps), strict=True
         )
     )
-    return (
-        f"{many(opened, one='case was', more='cases were')} opened: {aside:,} set"
-        f" aside, {upheld:,} decided and standing, {overturned:,} overturned on appeal,"
-        f" {undecided:,} not decided yet."
+    parts = (
+        (aside, "set aside"),
+        (upheld, "decided and stand" if upheld != 1 else "decided and stands"),
+        (overturned, "overturned on appeal"),
+        (undecided, "not decided yet"),
     )
+    said = "; ".join(f"{numbers.was(count)} {words}" for count, words in parts if count)
+    return f"Of {many(opened, one='case', more='cases')}, {said}."
 
 
 def procedure(figures: SeasonFigures) -> tuple[str, ...]:
@@ -94,14 +115,34 @@ def procedure(figures: SeasonFigures) -> tuple[str, ...]:
 
 
 def dues(figures: SeasonFigures) -> str:
-    """Say what money was charged, paid and is open."""
-    if not figures.dues:
-        return "No dues in money were charged."
-    charged, paid, still_open = (
-        f"{numbers.money(sum(values), currency=figures.currency)} {figures.currency}"
-        for values in zip(*((r.charged, r.paid, r.open) for r in figures.dues), strict=True)
-    )
-    return f"Dues of {charged} were charged; {paid} is paid and {still_open} is open."
+    """Say what money was charged, paid and is open, and apart from that what came for work."""
+    fines = [row for row in figures.dues if row.kind != INSTEAD_OF_WORK]
+    instead = [row for row in figures.dues if row.kind == INSTEAD_OF_WORK]
+    sentences = []
+    if fines:
+        charged, paid, still_open = (
+            _money(figures, sum(values))
+            for values in zip(*((row.charged, row.paid, row.open) for row in fines), strict=True)
+        )
+        kinds = " and ".join(dict.fromkeys(_kind(row) for row in fines))
+        sentences.append(
+            f"{kinds} of {charged} were charged; {paid} is paid and {still_open} is open."
+        )
+    else:
+        sentences.append("No dues in money were charged.")
+    if instead:
+        count = many(sum(row.count for row in instead), one="payment", more="payments")
+        paid = _money(figures, sum(row.paid for row in instead))
+        sentences.append(f"Apart from that, {count} of {paid} came in place of work.")
+    return " ".join(sentences)
+
+
+def _kind(row: MoneyDueRow) -> str:
+    return {"fine": "Fines"}.get(row.kind, f"Dues ({row.kind})")
+
+
+def _money(figures: SeasonFigures, minor: int) -> str:
+    return f"{numbers.money(minor, currency=figures.currency)} {figures.currency}"
 
 
 def duties(figures: SeasonFigures) -> str:
@@ -109,13 +150,19 @@ def duties(figures: SeasonFigures) -> str:
     duty = figures.duties
     if duty is None:
         return "The book asks for no work."
-    owed, rendered, replaced, short = (
+    owed, rendered, replaced, short, beyond = (
         numbers.amount_with_unit(value, base=duty.base, unit=duty.unit)
-        for value in (duty.owed, duty.rendered, duty.replaced, duty.short)
+        for value in (duty.owed, duty.rendered, duty.replaced, duty.short, duty.beyond)
     )
+    more = f" Some gave more than they owed: {beyond} in all." if duty.beyond else ""
+    if not duty.members_short:
+        ending = "nobody is short."
+    else:
+        members = many(duty.members_short, one="member is", more="members are")
+        ending = f"{members} short by {short} in all."
     return (
-        f"Of {owed} of work owed, {rendered} was given and {replaced} replaced by money;"
-        f" {many(duty.members_short, one='member is', more='members are')} short by {short} in all."
+        f"{owed} of work was owed; {rendered} was given and {replaced} replaced by money;"
+        f" {ending}{more}"
     )
 
 
@@ -152,101 +199,58 @@ def orders(figures: SeasonFigures) -> str:
     return f"The season had {orders_count} from outside authorities."
 
 
-def advice(figures: SeasonFigures, row: Advice) -> str:
-    """Say what is proposed, how it compares with the present, and at what risk."""
-    resource = figures.resource(row.resource)
-    proposed, present = (_with_unit(resource, value) for value in (row.proposed, row.present))
-    change = row.proposed - row.present
-    if not change or not row.present:
-        step = "as now" if not change else f"from {present} now"
-    else:
-        direction = "more" if change > 0 else "less"
-        step = f"{numbers.percent(Fraction(abs(change), row.present))} {direction} than {present}"
-    return (
-        f"For {row.season} the advice proposes an allowable of {proposed} of {resource.name},"
-        f" {step}.{_risk_of_proposal(row)}"
-    )
-
-
-def _risk_of_proposal(row: Advice) -> str:
-    if row.survey_risk is not None:
-        tried_rates = [one for one in row.survey_risk.rows if one.candidate == row.proposed]
-        return "".join(
-            f" The chance that this is more than {row.survey_risk.rate} of what really stands is"
-            f" {numbers.chance(one.chance_above)}."
-            for one in tried_rates
-        )
-    if row.risk is None:
-        return ""
-    tried = [one for one in row.risk.rows if one.candidate == row.proposed]
-    if not tried:
-        return ""
-    return (
-        f" Taken every year whatever comes, the chance of falling below {row.risk.limit_words}"
-        f" within {row.risk.horizon_years} years is {numbers.chance(tried[0].chance_below)}; set"
-        f" anew each year by the rule, it is {numbers.chance(row.risk.under_rule)}."
-    )
-
-
-def method(row: Advice) -> tuple[str, ...]:
-    """Say how the advice was made."""
-    runs = "It uses no chance."
-    if row.runs is not None:
-        runs = f"It uses {row.runs:,} runs from the seed {row.seed}."
-    return (
-        f"Clause {row.clause} asks for it. {row.method}",
-        f"Model: {row.model} Data: {row.data_first_year} to {row.data_last_year}."
-        f" Made on {numbers.day(row.made_on)}. {runs}",
-        f"Rule: {row.rule}",
-    )
-
-
-def stock(row: Advice, *, resource: ResourceFigures) -> str:
-    """Say where the stock stands between the last estimated year and the last projected one."""
-    assert row.stock is not None
-    bands = row.stock.bands
-    if not bands:
-        return f"The stock of {resource.name} has no estimated year."
-    past = [band for band in bands if band.year < row.stock.first_projected]
-    now, last = (past or bands)[-1], bands[-1]
-
-    def rough(value: int) -> str:
-        return numbers.rough_amount(value, base=resource.base, unit=resource.unit)
-
-    sentence = (
-        f"The stock of {resource.name} is estimated at {rough(now.median)} in {now.year}; 95 of 100"
-        f" runs lie between {rough(now.low_95)} and {rough(now.high_95)}."
-    )
-    if last is now:
-        return sentence
-    return (
-        f"{sentence} Under the advice the median in {last.year} is {rough(last.median)}, between"
-        f" {rough(last.low_95)} and {rough(last.high_95)}."
-    )
-
-
 def next_season(figures: SeasonFigures) -> tuple[str, ...]:
-    """Say what is adopted for the next season."""
-    sentences = []
-    for row in figures.next_season:
-        resource = figures.resource(row.resource)
-        sentences.append(
-            f"The {row.adopted_by} adopted {_with_unit(resource, row.allowable)} of {resource.name}"
-            f" on {numbers.day(row.adopted_on)}, for {numbers.day(row.opens)} to"
-            f" {numbers.day(row.closes)};"
-            f" {many(row.holders, one='member holds', more='members hold')} an allotment."
+    """Say what is adopted for the next season, and what members may take of it."""
+    sentences = tuple(_next(figures, row) for row in figures.next_season)
+    return sentences or ("No allowable of the next season is adopted yet.",)
+
+
+def _next(figures: SeasonFigures, row: NextSeasonRow) -> str:
+    resource = figures.resource(row.resource)
+    adopted, reserve, allotted, carried, off, may_take = (
+        _with_unit(resource, value)
+        for value in (
+            *(row.allowable, row.reserve, row.allotted, row.carried_in),
+            *(row.owed + row.given_back, row.may_take),
         )
-    return tuple(sentences) or ("No allowable of the next season is adopted yet.",)
+    )
+    who = many(len(row.shares), one="member", more="members")
+    spread = ""
+    if row.shares:
+        least, most = (_with_unit(resource, value) for value in (row.shares[0], row.shares[-1]))
+        spread = f", from {least} to {most} each"
+    return (
+        f"The {row.adopted_by} adopted {adopted} of {resource.name} on"
+        f" {numbers.day(row.adopted_on)}"
+        f" for {numbers.day(row.opens)} to {numbers.day(row.closes)}: {allotted} is allotted and"
+        f" {reserve} kept in reserve. With {carried} carried in and {off} coming off for what was"
+        f" taken beyond a measure, {who} may take {may_take} in all{spread}."
+    )
 
 
 def settlement(figures: SeasonFigures) -> tuple[str, ...]:
     """Say how each resource was settled."""
-    return tuple(
-        f"Of {resource.name}, {_with_unit(resource, resource.settlement.carried)} is carried to the"
-        f" next season, {_with_unit(resource, resource.settlement.unclaimed)} went back to the"
-        f" pool, and {_with_unit(resource, resource.settlement.owed)} comes off the next allotments"
-        " of those who took too much."
-        for resource in figures.resources
+    return tuple(_settled(resource) for resource in figures.resources)
+
+
+def _settled(resource: ResourceFigures) -> str:
+    settled = resource.settlement
+    parts = (
+        (resource.reserve, "was kept in reserve"),
+        (settled.given_back, "was given back in the season, off members' allotments"),
+        (settled.carried, "is carried to the next season"),
+        (settled.unclaimed, "went back to the pool unclaimed"),
+    )
+    said = ", ".join(f"{_with_unit(resource, value)} {words}" for value, words in parts if value)
+    owed = (
+        f" {_with_unit(resource, settled.owed)} was taken beyond what members had, and comes off"
+        " their next allotments."
+        if settled.owed
+        else ""
+    )
+    return (
+        f"Of {resource.name}, {_with_unit(resource, resource.left)} was left:"
+        f" {said or 'nothing to settle'}.{owed}"
     )
 
 
@@ -262,15 +266,18 @@ def edition(figures: SeasonFigures) -> str:
 
 def recompute(figures: SeasonFigures) -> tuple[str, ...]:
     """Say how anybody may check the report."""
+    first = numbers.day(figures.first)
     return (
         "Every figure of this report comes from the journal's entries that the proof line names,"
         " and from nothing else.",
-        "Run “python manage.py verify” on the book: it recounts the balances from the entries,"
-        " rebuilds the tree of hashes, and prints the head. The first digits are those in the proof"
-        " line, as long as no later entry was made.",
-        "Make the report again at the same head: the digest of its figures must be"
-        f" {numbers.short_digest(digest(figures))} (SHA-256: {digest(figures)}). The moment of"
-        " making is not part of it.",
+        "Run “.venv/bin/python manage.py verify” on the book: it recounts the balances from the"
+        " entries, rebuilds the tree of hashes, and prints the head. The first digits are those in"
+        " the proof line, as long as no later entry was made.",
+        f"Run “.venv/bin/python manage.py report --commons SLUG --season {first}”, with the short"
+        " name of the commons for SLUG: it makes the report again, and prints the proof line and"
+        " the digest of the figures. The report must be made at the same head, before any later"
+        " entry; the moment of making is not part of the digest.",
+        f"The digest must be {numbers.short_digest(digest(figures))} (SHA-256: {digest(figures)}).",
         "The advice is repeated by its seed and its number of runs, stated beside it.",
         "The page, the PDF and the workbook show the same figures; the workbook has them as"
         " numbers, so that anybody can add them up.",

@@ -12,7 +12,7 @@ from ledger.reports.outline import Cell, Kind, Report, Section, Sheet, Table
 _WIDTH_MIN, _WIDTH_MAX = 9, 44
 _SENTENCE_COLUMNS = 6
 _LINE_POINTS = 15
-_FILLS = ("", "#EAF3F9", "#D3E6F2", "#B9D8EA", "#9CC8E1")
+_FILLS = ("", "#EAF3F9", "#D3E6F2", "#B9D8EA", "#9CC8E1", "#7AB5D6")
 # A print header holds at most 255 signs, the proof line and the page number among them.
 _HEADER_NAME_MAX = 80
 
@@ -115,10 +115,13 @@ class _Page:
         heading = f"{report.commons} · {report.title} · {self._kind.value}"
         self._sheet.write_string(0, 0, heading, bold)
         self._sheet.write_string(1, 0, report.proof, self._formats.get(font_color="#595959"))
+        if report.mark:
+            self._sheet.write_string(2, 0, report.mark, bold)
         name, proof = (
             text.replace("&", "&&") for text in (report.commons[:_HEADER_NAME_MAX], report.proof)
         )
-        self._sheet.set_header(f"&L{name}\n{proof}&R&P of &N")
+        mark = f"\n{report.mark}" if report.mark else ""
+        self._sheet.set_header(f"&L{name}\n{proof}{mark}&R&P of &N")
         self._sheet.set_paper(9)
         self._sheet.fit_to_pages(1, 0)
         self._row = 3

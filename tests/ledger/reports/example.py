@@ -4,7 +4,7 @@ from datetime import UTC, date, datetime, timedelta
 from fractions import Fraction
 
 from governance.advice import records as advised
-from ledger.reports import cautions, figures
+from ledger.reports import cautions, details, figures
 
 OPENS, CLOSES = date(2026, 3, 1), date(2026, 6, 28)
 DAYS = tuple(OPENS + timedelta(days=step) for step in range(120))
@@ -58,7 +58,14 @@ def mullet(*, daily: tuple[figures.DayTake, ...] | None = None) -> figures.Resou
             figures.AllowableStep(from_day=date(2026, 4, 20), amount=68_000_000),
         ),
         zones=_parts(taken, MULLET_GROUNDS),
-        settlement=figures.SettlementFigures(carried=2_411_250, unclaimed=3_020_775, owed=96_400),
+        # Left is reserve, given back, carried and unclaimed, less what is owed.
+        settlement=figures.SettlementFigures(
+            given_back=52_500,
+            carried=2_411_250,
+            unclaimed=68_000_000 + 1_204_500 - taken - 1_360_000 - 52_500 - 2_411_250 + 96_400,
+            owed=96_400,
+            after_close=0,
+        ),
     )
 
 
@@ -85,7 +92,13 @@ def clams() -> figures.ResourceFigures:
         daily=rows,
         allowable_steps=(figures.AllowableStep(from_day=OPENS, amount=22_000_000),),
         zones=_parts(taken, CLAM_GROUNDS),
-        settlement=figures.SettlementFigures(carried=0, unclaimed=1_713_300, owed=12_350),
+        settlement=figures.SettlementFigures(
+            given_back=20_500,
+            carried=0,
+            unclaimed=22_000_000 - taken - 20_500 + 12_350 + 4_250,
+            owed=12_350,
+            after_close=4_250,
+        ),
     )
 
 
@@ -106,13 +119,15 @@ def _standing(number: int) -> figures.StandingRow:
                 resource="mullet",
                 allotment=allotment,
                 carried_in=11_005 * (number % 3),
+                given_back=5_250 * (number % 2),
                 taken=taken,
-                left=allotment + 11_005 * (number % 3) - taken,
+                left=allotment + 11_005 * (number % 3) - 5_250 * (number % 2) - taken,
             ),
             figures.HoldingFigures(
                 resource="clams",
                 allotment=own_clams,
                 carried_in=0,
+                given_back=0,
                 taken=clams_taken,
                 left=own_clams - clams_taken,
             ),
@@ -143,7 +158,7 @@ def _risk() -> advised.RiskTable:
         )
     return advised.RiskTable(
         limit=68_300_000,
-        limit_words="a fifth of the stock without any take",
+        limit_words="0.2 K",
         cut_words="the allowable after this one is lower",
         horizon_years=20,
         at_most=0.05,
@@ -201,6 +216,7 @@ def mullet_advice() -> advised.Advice:
         estimates=(
             _estimate("r", "growth of a small stock", 0.38712, 0.2911, 0.4902, "1/a"),
             _estimate("K", "stock without any take", 341_523.4, 301_011.2, 402_218.9, "kg"),
+            _estimate("B2026", "the stock now", 198_452.6, 171_011.2, 231_218.9, "kg"),
             _estimate("q", "survey index for each kilogram", 0.0000031842, None, None, "1"),
         ),
         reference_points=(
@@ -240,7 +256,7 @@ def clam_advice() -> advised.Advice:
         data_first_year=2026,
         data_last_year=2026,
         interval="",
-        estimates=(_estimate("B", "biomass on the six grounds", 148_250.0, None, None, "kg"),),
+        estimates=(_estimate("anvil_sand", "found there", 148_250.0, None, None, "kg"),),
         reference_points=(),
         rule="Fifteen hundredths of the surveyed biomass.",
         present=22_000_000,
@@ -258,7 +274,7 @@ def clam_advice() -> advised.Advice:
             ),
         ),
         stock=None,
-        reasons=(),
+        reasons=("The survey found 148,250 kg on the grounds anvil_sand, cockle_row.",),
         cautions=("The survey says nothing of how fast the clams grow.",),
         runs=None,
         seed=None,
@@ -365,11 +381,100 @@ def _observations() -> tuple[figures.ObservationRow, ...]:
     return (*surveys, index)
 
 
+def _finding_details() -> tuple[details.FindingDetail, ...]:
+    rows = (
+        ("3.1", "household", 31, "g", "kg", 99_500, 90_000, 5_000, (312, 318, 331, 340, 351)),
+        ("5.1", "member", 44, "min", "h", 4_499, 2_880, 1_619, (277,)),
+        ("6.1", "member", 10, "min", "h", 0, 720, 720, ()),
+    )
+    return tuple(
+        details.FindingDetail(
+            number=201 + place,
+            clause=clause,
+            subject_kind=kind,
+            subject=subject,
+            first=date(2026, 3, 8 + place),
+            last=date(2026, 3, 8 + 2 * place),
+            base=base,
+            unit=unit,
+            total=total,
+            limit=limit,
+            breach=breach,
+            entries=entries,
+            standing=place != 1,
+        )
+        for place, (clause, kind, subject, base, unit, total, limit, breach, entries) in enumerate(
+            rows
+        )
+    )
+
+
+def _case_details() -> tuple[details.CaseDetail, ...]:
+    return (
+        details.CaseDetail(
+            number=71,
+            finding=201,
+            ladder="Taking more than allowed",
+            state="final",
+            step=2,
+            measure="fine",
+            amount=1_525,
+            told_on=date(2026, 3, 17),
+            decided_on=date(2026, 4, 2),
+            final_on=date(2026, 4, 24),
+        ),
+        details.CaseDetail(
+            number=72,
+            finding=202,
+            ladder="Late slips",
+            state="set aside",
+            step=None,
+            measure="",
+            amount=0,
+            told_on=None,
+            decided_on=None,
+            final_on=None,
+        ),
+    )
+
+
+def _next_holdings() -> tuple[details.NextHolding, ...]:
+    """Give three members who share 46,648 kg."""
+    return (
+        details.NextHolding(
+            member=3,
+            household=3,
+            allotment=10_648_000,
+            carried_in=411_250,
+            owed=0,
+            given_back=0,
+        ),
+        details.NextHolding(
+            member=17,
+            household=17,
+            allotment=12_000_000,
+            carried_in=0,
+            owed=96_400,
+            given_back=8_500,
+        ),
+        details.NextHolding(
+            member=43,
+            household=6,
+            allotment=24_000_000,
+            carried_in=2_000_000,
+            owed=0,
+            given_back=0,
+        ),
+    )
+
+
 def season(*, commons: str = "Tarrin Bay Fishing Cooperative") -> figures.SeasonFigures:
     """Give a full season of figures."""
     return figures.SeasonFigures(
         commons=commons,
+        is_demo=True,
         season="2026",
+        first=OPENS,
         made_at=datetime(2026, 6, 30, 18, 2, tzinfo=UTC),
         zone="Europe/Dublin",
         proof=PROOF,
@@ -384,24 +489,30 @@ def season(*, commons: str = "Tarrin Bay Fishing Cooperative") -> figures.Season
             votes_abstained=2,
         ),
         resources=(mullet(), clams()),
+        names=(
+            figures.NameRow(code="2027", name="the season from 2027-03-01"),
+            figures.NameRow(code="3.1", name="No more than ninety kilos of mullet a day"),
+            figures.NameRow(code="anvil_sand", name="Anvil Sand"),
+            figures.NameRow(code="cockle_row", name="Cockle Row"),
+            figures.NameRow(code="quota.clams", name="How many clams"),
+            figures.NameRow(code="quota.mullet", name="How much mullet"),
+        ),
         findings=_findings(),
+        finding_details=_finding_details(),
         cases=_cases(),
+        case_details=_case_details(),
         dues=(
             figures.MoneyDueRow(kind="fine", count=7, charged=61_350, paid=40_125, open=21_225),
             figures.MoneyDueRow(
                 kind="instead of work", count=9, charged=54_000, paid=54_000, open=0
             ),
         ),
-        restitution=(
-            figures.RestitutionRow(
-                resource="mullet", count=12, charged=148_900, paid=52_500, open=96_400
-            ),
-        ),
+        restitution=(figures.RestitutionRow(resource="mullet", count=12, amount=148_900),),
         duties=figures.DutyFigures(
             base="min",
             unit="h",
             owed=30_960,
-            rendered=27_045,
+            rendered=27_315,
             replaced=3_240,
             short=675,
             members_short=6,
@@ -438,10 +549,7 @@ def season(*, commons: str = "Tarrin Bay Fishing Cooperative") -> figures.Season
                 allowable=47_600_000,
                 reserve=952_000,
                 allotted=46_648_000,
-                holders=43,
-                smallest=602_344,
-                median=1_204_688,
-                largest=2_409_375,
+                holdings=_next_holdings(),
             ),
         ),
         cautions=cautions.CAUTIONS,

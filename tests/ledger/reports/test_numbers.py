@@ -12,18 +12,48 @@ from ledger.reports import numbers, outline
     ("probability", "words"),
     [
         (0.0, "in no run (0.0 %)"),
-        (0.0004, "under 1 in 40 (0.0 %)"),
+        (0.0004, "under 0.1 %"),
+        (0.001, "under 1 in 40 (0.1 %)"),
         (0.0249, "under 1 in 40 (2.5 %)"),
         (0.025, "1 in 20 (2.5 %)"),
         (0.146, "3 in 20 (14.6 %)"),
         (0.5, "10 in 20 (50.0 %)"),
         (0.975, "20 in 20 (97.5 %)"),
         (0.98, "over 39 in 40 (98.0 %)"),
+        (0.9996, "over 99.9 %"),
         (1.0, "in every run (100.0 %)"),
     ],
 )
 def test_a_chance_is_written_as_people_count(probability: float, words: str) -> None:
     assert numbers.chance(probability).replace("\u00a0", " ") == words
+
+
+@pytest.mark.parametrize(
+    ("probability", "words"),
+    [
+        (0.0, "under 0.1 %"),
+        (1e-300, "under 0.1 %"),
+        (0.5, "10 in 20 (50.0 %)"),
+        (1.0, "over 99.9 %"),
+    ],
+)
+def test_a_chance_that_no_run_counts_is_never_a_certainty(probability: float, words: str) -> None:
+    assert numbers.reckoned_chance(probability).replace("\u00a0", " ") == words
+
+
+@pytest.mark.parametrize(
+    ("grams", "words"),
+    [
+        (72_264_270, "72,264 kg"),
+        (22_372_500, "22,373 kg"),
+        (1_000, "1 kg"),
+        (999, "0.999 kg"),
+        (0, "0 kg"),
+        (-5_190, "-5 kg"),
+    ],
+)
+def test_an_amount_in_a_sentence_is_rounded_to_whole_units(grams: int, words: str) -> None:
+    assert numbers.whole_amount(grams, base="g", unit="kg").replace("\u00a0", " ") == words
 
 
 @pytest.mark.parametrize(
