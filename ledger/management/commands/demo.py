@@ -7,23 +7,26 @@ from typing import Any
 
 from django.conf import settings
 from django.core.management.base import BaseCommand, CommandError
-from django.db import connection
+from django.db import IntegrityError, connection
 from django.db.migrations.executor import MigrationExecutor
 
 from ledger.cases import queries as cases
 from ledger.commons import queries as commons
+from ledger.commons.operations import AlreadyKept
 from ledger.foundation.clocks import seeded_chance
 from ledger.journal import queries as journal
 from ledger.management import playing, scenario
 from ledger.management.scenario_cells import ScenarioError
+from ledger.management.scenario_records import Scenario
 from ledger.management.stage import Play
-from ledger.reports import collecting, html, numbers, pdf, text, xlsx
-from ledger.reports.figures import SeasonFigures, digest
+from ledger.reports import collecting, files, numbers, text
+from ledger.reports.figures import digest
 
 FOLDER = Path(settings.ROOT) / "fixtures" / "tarrin_bay"
 SEED = 20260301
 ACCOUNT = ("summary", "findings", "standing", "settlement", "resource-*", "next", "cautions")
-REPORTS = ("report.html", "report.pdf", "report.xlsx")
+# How many other demos may take a name between the look and the founding.
+ATTEMPTS = 20
 STEP_DAYS = 14
 INTRODUCTION = """\
 {name}: an invented commons, invented people, invented figures.
@@ -46,11 +49,15 @@ class Command(BaseCommand):
         """Play, tell, write."""
         _check_tables()
         started = monotonic()
-        slug = _free_slug()
+        try:
+            files.check_folder(Path(settings.OUTPUT))
+        except files.FolderUnusable as error:
+            raise CommandError(str(error)) from error
         try:
             story = scenario.read(folder=FOLDER)
         except ScenarioError as error:
             raise CommandError(str(error)) from error
+        slug, play = _begun(story)
         self.stdout.write(
             INTRODUCTION.format(
                 name=story.commons.name,
@@ -59,8 +66,6 @@ class Command(BaseCommand):
                 slug=slug,
             )
         )
-        book = (FOLDER / "bylaws.yaml").read_text(encoding="utf-8")
-        play = playing.begin(scenario=story, book=book, slug=slug, chance=seeded_chance(SEED))
         for place, day in enumerate(playing.play_on(play=play)):
             if place % STEP_DAYS == 0:
                 self._progress(play, day)
@@ -71,7 +76,8 @@ class Command(BaseCommand):
         )
         for line in text.season_text(figures, keys=ACCOUNT):
             self.stdout.write(line)
-        folder = _write(figures, slug)
+        folder = Path(settings.OUTPUT) / slug
+        files.write(figures=figures, folder=folder)
         self.stdout.write(
             f"\nThe head of the journal, and the digest of the figures\n"
             f"{'=' * 54}\n"
@@ -81,7 +87,7 @@ class Command(BaseCommand):
             "\n"
             f"The season report, as a page, for print and as a workbook, is in\n"
             f"  {folder}\n"
-            f"    {'  '.join(REPORTS)}\n"
+            f"    {'  '.join(files.NAMES)}\n"
             f"Done in {monotonic() - started:.0f} seconds."
         )
 
@@ -101,18 +107,22 @@ def _check_tables() -> None:
         raise CommandError("The database has no tables yet, or old ones: run migrate first.")
 
 
+def _begun(story: Scenario) -> tuple[str, Play]:
+    """Found a commons of this run's own, under the next name where another run was quicker."""
+    book = (FOLDER / "bylaws.yaml").read_text(encoding="utf-8")
+    for _ in range(ATTEMPTS):
+        slug = _free_slug()
+        try:
+            chance = seeded_chance(SEED)
+            return slug, playing.begin(scenario=story, book=book, slug=slug, chance=chance)
+        except (AlreadyKept, IntegrityError):
+            # Only the short name can be taken: everything else belongs to the new commons.
+            continue
+    raise CommandError("Other demos are being started just now; start this one again.")
+
+
 def _free_slug() -> str:
     """Return a name that no commons has: each run plays in a commons of its own."""
     taken = {record.slug for record in commons.every_commons()}
     numbered = (f"tarrin-bay-demo-{number}" for number in range(1, len(taken) + 2))
     return next(slug for slug in numbered if slug not in taken)
-
-
-def _write(figures: SeasonFigures, slug: str) -> Path:
-    folder = Path(settings.OUTPUT) / slug
-    folder.mkdir(parents=True, exist_ok=True)
-    page, document, workbook = (folder / name for name in REPORTS)
-    page.write_text(html.season_html(figures), encoding="utf-8")
-    document.write_bytes(pdf.season_pdf(figures))
-    workbook.write_bytes(xlsx.season_xlsx(figures))
-    return folder
