@@ -57,7 +57,7 @@ class Command(BaseCommand):
             story = scenario.read(folder=FOLDER)
         except ScenarioError as error:
             raise CommandError(str(error)) from error
-        slug, play = _begun(story)
+        slug, play = begun(story)
         self.stdout.write(
             INTRODUCTION.format(
                 name=story.commons.name,
@@ -107,11 +107,11 @@ def _check_tables() -> None:
         raise CommandError("The database has no tables yet, or old ones: run migrate first.")
 
 
-def _begun(story: Scenario) -> tuple[str, Play]:
+def begun(story: Scenario) -> tuple[str, Play]:
     """Found a commons of this run's own, under the next name where another run was quicker."""
     book = (FOLDER / "bylaws.yaml").read_text(encoding="utf-8")
     for _ in range(ATTEMPTS):
-        slug = _free_slug()
+        slug = free_slug()
         try:
             chance = seeded_chance(SEED)
             return slug, playing.begin(scenario=story, book=book, slug=slug, chance=chance)
@@ -121,7 +121,7 @@ def _begun(story: Scenario) -> tuple[str, Play]:
     raise CommandError("Other demos are being started just now; start this one again.")
 
 
-def _free_slug() -> str:
+def free_slug() -> str:
     """Return a name that no commons has: each run plays in a commons of its own."""
     taken = {record.slug for record in commons.every_commons()}
     numbered = (f"tarrin-bay-demo-{number}" for number in range(1, len(taken) + 2))
