@@ -6,11 +6,13 @@ says, so they are told: which season, and which clauses count a household as one
 
 import json
 from collections import Counter, defaultdict
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable
 from datetime import datetime, timedelta
 from fractions import Fraction
 from statistics import median
 from typing import Any
+
+from tests.acceptance import recount_accounts as accounts
 
 Entry = dict[str, Any]
 Figures = dict[str, Any]
@@ -40,7 +42,7 @@ def recount(lines: Iterable[str], *, first: str, household_clauses: frozenset[st
     :param lines: an entry each, in order of number.
     """
     found = _Recount([json.loads(line) for line in lines], first, household_clauses).figures()
-    return {name: value for name, value in found.items() if value not in (0, {}, [])}
+    return {name: value for name, value in found.items() if value not in (0, None, [])}
 
 
 class _Recount:
@@ -55,7 +57,6 @@ class _Recount:
         self.mine = {each["resource"]: each for each in self.opened if each["from"] == first}
         (self.until,) = {each["until"] for each in self.mine.values()}
         self.slips = self.within("withdrawal")
-        self.adopted = {e["facts"]["season"]: e for e in self.of_kind["allowable_adopted"]}
 
     def within(self, kind: str) -> list[Entry]:
         return [each for each in self.of_kind[kind] if self.first <= each["day"] < self.until]
@@ -63,11 +64,13 @@ class _Recount:
     def figures(self) -> Figures:
         found = self.reporting() | self.inspections() | self.dues()
         found |= self.duties() | self.cases() | self.outside()
+        book = accounts.Book(self.entries, self.of_kind)
         for resource, season in self.mine.items():
-            found |= self.taken(resource) | self.rights(resource, season["season"])
+            found |= self.taken(resource) | accounts.rights(book, resource, season["season"])
             later = [e for e in self.opened if e["resource"] == resource and e["from"] > self.first]
             if later:
-                found |= self.next(resource, min(later, key=lambda e: e["from"])["season"])
+                after = min(later, key=lambda each: each["from"])["season"]
+                found |= accounts.next_rights(book, resource, season["season"], after)
         return found
 
     def taken(self, resource: str) -> Figures:
@@ -85,41 +88,6 @@ class _Recount:
                 names[f"{zone}.slips"].add(slip["number"])
                 names[f"{resource}.members_took"].add(slip["subject"])
         return dict(found) | {name: len(each) for name, each in names.items()}
-
-    def rights(self, resource: str, season: str) -> Figures:
-        adopted = self.adopted[season]
-        (close,) = (e for e in self.of_kind["season_closed"] if e["facts"]["season"] == season)
-        before, settled = _balances(self.entries[: close["number"] - 1]), _balances([close])
-        left, taken = (_by_member(before, f"{name}:{season}:") for name in ("left", "taken"))
-        brought = _by_member(_balances([adopted]), f"carried:{resource}:")
-        waiting = _by_member(settled, f"carried:{resource}:").values()
-        available = adopted["facts"]["amount"] - sum(brought.values())
-        found = _issued(resource, adopted) | {
-            f"{resource}.carried_in": -sum(brought.values()),
-            f"{resource}.left": available - sum(taken.values()),
-            f"{resource}.members_entitled": sum(left[m] + taken.get(m, 0) > 0 for m in left),
-            f"{resource}.settlement.carried": sum(each for each in waiting if each > 0),
-            f"{resource}.settlement.owed": -sum(each for each in waiting if each < 0),
-            f"{resource}.settlement.unclaimed": settled[f"pool:{season}"],
-        }
-        for member, remaining in left.items():
-            own, carried_in = f"member.{member}.{resource}", -brought.get(member, 0)
-            found[f"{own}.allotment"] = remaining + taken.get(member, 0) - carried_in
-            found[f"{own}.carried_in"] = carried_in
-            found[f"{own}.left"] = remaining
-        return found
-
-    def next(self, resource: str, season: str) -> Figures:
-        adopted = self.adopted[season]
-        left = _by_member(_balances(self.entries), f"left:{season}:").values()
-        parts = [part for part in left if part > 0]
-        return _issued(f"{resource}.next", adopted) | {
-            f"{resource}.next.adopted_on": adopted["day"],
-            f"{resource}.next.holders": len(parts),
-            f"{resource}.next.smallest": min(parts),
-            f"{resource}.next.median": int(median(parts)),
-            f"{resource}.next.largest": max(parts),
-        }
 
     def reporting(self) -> Figures:
         read, second = datetime.fromisoformat, timedelta(seconds=1)
@@ -198,18 +166,21 @@ class _Recount:
         for entry in self.standing:
             if entry["kind"] in STATE_AFTER:
                 events[entry["facts"]["case"]].append(entry)
-        found: Counter[str] = Counter()
-        for note, *later in events.values():
+        counted: Counter[str] = Counter()
+        found: Figures = {}
+        for number, (note, *later) in events.items():
             state = STATE_AFTER[[note, *later][-1]["kind"]]
             withdrawn = any("was withdrawn" in each["texts"].get("reason", "") for each in later)
             clause = note["facts"]["clause"]
-            found[f"cases.{state}"] += 1
-            found[f"findings.{clause}.found"] += 1
-            found[f"findings.{clause}.{'withdrawn' if withdrawn else 'standing'}"] += 1
+            counted[f"cases.{state}"] += 1
+            counted[f"findings.{clause}.found"] += 1
+            counted[f"findings.{clause}.{'withdrawn' if withdrawn else 'standing'}"] += 1
             if state not in ENDED:
                 whose = note["facts"]["subjects"] if clause in self.shared else [note["subject"]]
-                found.update(f"member.{member}.open_cases" for member in whose)
-        return dict(found)
+                counted.update(f"member.{member}.open_cases" for member in whose)
+            course = {"state": state, "finding": note["facts"]["finding"], **_course(later)}
+            found |= {f"case.{number}.{name}": value for name, value in course.items()}
+        return found | dict(counted)
 
     def outside(self) -> Figures:
         """Recount the orders of the season, and the readings of its year and later."""
@@ -227,24 +198,18 @@ class _Recount:
         return found
 
 
-def _balances(entries: Iterable[Entry]) -> Counter[str]:
-    """Fold postings, reversals and all, into what stands on each account."""
-    standing: Counter[str] = Counter()
-    for entry in entries:
-        for posting in entry["postings"]:
-            standing[posting["account"]] += posting["amount"]
-    return standing
-
-
-def _by_member(balances: Mapping[str, int], prefix: str) -> dict[int, int]:
-    return {
-        int(account.removeprefix(prefix)): amount
-        for account, amount in balances.items()
-        if account.startswith(prefix)
-    }
-
-
-def _issued(name: str, adopted: Entry) -> Figures:
-    amount, reserve = adopted["facts"]["amount"], adopted["facts"]["reserve"]
-    parts = {"allowable": amount, "reserve": reserve, "allotted": amount - reserve}
-    return {f"{name}.{part}": value for part, value in parts.items()}
+def _course(events: list[Entry]) -> Figures:
+    """Return what a case has come to: a return to checking undoes the notice and the decision."""
+    found: Figures = {}
+    for entry in events:
+        facts, move = entry["facts"], entry["kind"].removeprefix("case_")
+        if move == "return_to_checking":
+            found = {}
+        elif move in ("tell", "attempt") and facts["delivery"]["proved"]:
+            found["told_on"] = facts["delivery"]["on"]
+        elif move == "decide":
+            found |= {"decided_on": entry["day"], "amount": facts["amount_minor"]}
+            found["step"] = facts["step"] + 1
+        elif move in ("uphold", "let_stand"):
+            found["final_on"] = entry["day"]
+    return found
