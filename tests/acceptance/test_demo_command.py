@@ -116,7 +116,8 @@ def _check_account(told: Told, season: PlayedSeason) -> None:
     assert f"  {told.folder}" in lines
     assert "a darker cell" not in told.account.lower()
     progress = told.progress.splitlines()
-    assert len(progress) > 20
+    assert len(progress) > 15
+    assert len({line.split()[4] for line in progress}) == len(progress), "no line tells nothing new"
     assert progress[0].split()[0] == "2026-02-17"
     assert "4,462 slips in" in progress[-1]
 

@@ -66,10 +66,11 @@ class Command(BaseCommand):
                 slug=slug,
             )
         )
+        size = 0
         for place, day in enumerate(playing.play_on(play=play)):
             if place % STEP_DAYS == 0:
-                self._progress(play, day)
-        self._progress(play, play.day_of(play.clock.now))
+                size = self._progress(play, day, since=size)
+        self._progress(play, play.day_of(play.clock.now), since=size)
         first = story.commons.seasons[0].during.first
         figures = collecting.season_figures(
             commons_id=play.commons_id, first=first, made_at=play.clock.now
@@ -91,14 +92,18 @@ class Command(BaseCommand):
             f"Done in {monotonic() - started:.0f} seconds."
         )
 
-    def _progress(self, play: Play, day: date) -> None:
+    def _progress(self, play: Play, day: date, *, since: int) -> int:
+        """Tell how far the play has come if the journal grew, and return its size."""
         size = journal.head(commons_id=play.commons_id).size
+        if size == since:
+            return size
         still_open = len(cases.cases(commons_id=play.commons_id, is_open=True))
         self.stderr.write(
             f"  {day}  {len(play.entered):>5,} slips in  {size:>5,} entries"
             f"  {numbers.many(still_open, one='case open', more='cases open'):>13}"
         )
         self.stderr.flush()
+        return size
 
 
 def _check_tables() -> None:
