@@ -214,17 +214,23 @@ def _next(figures: SeasonFigures, row: NextSeasonRow) -> str:
             *(row.owed + row.given_back, row.may_take),
         )
     )
+    split = f"{allotted} is allotted and {reserve} kept in reserve"
+    if not row.reserve:
+        split = "all of it is allotted"
+    moved = [f"{carried} carried in"] if row.carried_in else []
+    if row.owed + row.given_back:
+        moved.append(f"{off} coming off for what was taken beyond a measure")
+    counting = f"With {' and '.join(moved)}, " if moved else ""
     who = many(len(row.shares), one="member", more="members")
     spread = ""
     if row.shares:
         least, most = (_with_unit(resource, value) for value in (row.shares[0], row.shares[-1]))
         spread = f", from {least} to {most} each"
+    may = numbers.sentence_case(f"{counting}{who} may take {may_take} in all{spread}.")
     return (
         f"The {row.adopted_by} adopted {adopted} of {resource.name} on"
-        f" {numbers.day(row.adopted_on)}"
-        f" for {numbers.day(row.opens)} to {numbers.day(row.closes)}: {allotted} is allotted and"
-        f" {reserve} kept in reserve. With {carried} carried in and {off} coming off for what was"
-        f" taken beyond a measure, {who} may take {may_take} in all{spread}."
+        f" {numbers.day(row.adopted_on)} for {numbers.day(row.opens)} to"
+        f" {numbers.day(row.closes)}: {split}. {may}"
     )
 
 

@@ -31,3 +31,26 @@ def test_the_same_head_gives_the_same_proof_line_and_digest(
     for sheet in pypdf.PdfReader(tmp_path / "report.pdf").pages:
         assert season.figures.proof in sheet.extract_text()
         assert "Invented demo: no real commons, no real people" in sheet.extract_text()
+
+
+def test_the_columns_of_the_standing_sum_to_the_totals_of_use_and_settlement(
+    season: PlayedSeason,
+) -> None:
+    for of in season.figures.resources:
+        held = [
+            each
+            for row in season.figures.standings
+            for each in row.holdings
+            if each.resource == of.code
+        ]
+        settled = of.settlement
+        assert sum(each.allotment for each in held) == of.allotted
+        assert sum(each.carried_in for each in held) == of.carried_in
+        assert sum(each.given_back for each in held) == settled.given_back > 0
+        assert sum(each.taken for each in held) == of.taken - settled.after_close
+        assert sum(each.left for each in held) == (
+            settled.carried + settled.unclaimed - settled.owed
+        )
+    for after in season.figures.next_season:
+        of = season.figures.resource(after.resource)
+        assert (after.carried_in, after.owed) == (of.settlement.carried, of.settlement.owed)

@@ -109,6 +109,39 @@ def test_a_wide_table_scrolls_by_itself_and_by_the_keyboard(page: sync_api.Page)
     assert all(box["tab"] == 0 for box in wider)
 
 
+def test_captions_and_words_have_the_room_they_need(page: sync_api.Page) -> None:
+    captions = page.eval_on_selector_all(
+        "caption span",
+        """all => all.map(one => {
+            const place = one.getBoundingClientRect();
+            return place.left >= 0 && place.right <= document.documentElement.clientWidth;
+        })""",
+    )
+    assert len(captions) > 20
+    assert all(captions)
+    # Of words that go over several lines no line is a word alone: the column is nine rem wide.
+    narrow = page.eval_on_selector_all(
+        "tbody .text",
+        """all => all.filter(one => one.textContent.length > 14
+            && one.getBoundingClientRect().width < 9 * 16).map(one => one.textContent)""",
+    )
+    assert narrow == []
+
+
+def test_the_columns_of_the_contents_begin_at_one_height(page: sync_api.Page) -> None:
+    tops: list[list[float]] = page.eval_on_selector_all(
+        "nav li",
+        """all => all.map(one => {
+            const place = one.getBoundingClientRect();
+            return [place.left, place.top];
+        })""",
+    )
+    first = {left: min(top for each, top in tops if each == left) for left, _ in tops}
+    assert len(set(first.values())) == 1
+    assert page.viewport_size is not None
+    assert len(first) == (2 if page.viewport_size["width"] > 320 else 1)
+
+
 def test_it_prints(page: sync_api.Page, played_season: PlayedSeason) -> None:
     document = pypdf.PdfReader(BytesIO(page.pdf(prefer_css_page_size=True)))
     text = re.sub(r"\s+", " ", " ".join(sheet.extract_text() for sheet in document.pages))

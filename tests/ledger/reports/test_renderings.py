@@ -423,6 +423,20 @@ def test_the_pdf_is_tagged_pdf_ua_on_a4_under_a_megabyte(document: bytes) -> Non
     assert reader.metadata.creation_date == datetime(2026, 6, 30, 18, 2, tzinfo=UTC)
 
 
+def test_no_page_of_the_pdf_but_the_last_is_half_empty(document: bytes) -> None:
+    for leaf in pypdf.PdfReader(io.BytesIO(document)).pages[:-1]:
+        heights: list[float] = []
+
+        def note(words: str, place: Any, *rest: Any, kept: list[float] = heights) -> None:
+            if words.strip():
+                kept.append(float(place[5]))
+
+        leaf.extract_text(visitor_text=note)
+        # In points from the foot of a sheet of 842, where the head of the page stands high.
+        assert max(heights) > 780
+        assert min(heights) < 421
+
+
 def test_no_text_of_the_pdf_is_smaller_than_eight_points(document: bytes) -> None:
     sizes: set[float] = set()
 

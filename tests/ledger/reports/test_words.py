@@ -86,6 +86,19 @@ def test_the_next_season_says_what_members_may_take() -> None:
     )
 
 
+def test_what_is_nought_is_left_out_of_the_next_season() -> None:
+    (row,) = SEASON.next_season
+    plain = tuple(
+        dataclasses.replace(held, carried_in=0, owed=0, given_back=0) for held in row.holdings
+    )
+    bare = dataclasses.replace(row, allowable=row.allotted, reserve=0, holdings=plain)
+    (sentence,) = words.next_season(dataclasses.replace(SEASON, next_season=(bare,)))
+    assert _said(sentence).endswith(
+        ": all of it is allotted. 3 members may take 46,648 kg in all, from 10,648 kg to 24,000 kg"
+        " each."
+    )
+
+
 def test_every_state_of_a_case_is_explained() -> None:
     assert set(case_tables.STATE_MEANINGS) == {state.value.replace("_", " ") for state in State}
     assert all(case_tables.STATE_MEANINGS.values())
