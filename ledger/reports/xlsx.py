@@ -13,8 +13,8 @@ _WIDTH_MIN, _WIDTH_MAX = 9, 44
 _SENTENCE_COLUMNS = 6
 _LINE_POINTS = 15
 _FILLS = ("", "#EAF3F9", "#D3E6F2", "#B9D8EA", "#9CC8E1", "#7AB5D6")
-# A print header holds at most 255 signs, the proof line and the page number among them.
-_HEADER_NAME_MAX = 80
+# A print header holds at most 255 signs, with the proof line and the mark, and a & counts twice.
+_HEADER_NAME_MAX = 60
 
 
 def season_xlsx(figures: SeasonFigures, /) -> bytes:

@@ -583,3 +583,12 @@ def test_what_does_not_add_up_is_refused() -> None:
         dataclasses.replace(SEASON.next_season[0], holdings=SEASON.next_season[0].holdings[1:])
     with pytest.raises(figures.FiguresDisagree, match="less the reserve"):
         dataclasses.replace(SEASON.next_season[0], reserve=952_001)
+
+
+def test_the_print_header_of_a_sheet_holds_the_longest_name() -> None:
+    book = xlsx.season_xlsx(example.season(commons="&" * 200))
+    with zipfile.ZipFile(io.BytesIO(book)) as parts:
+        header = parts.read("xl/worksheets/sheet1.xml").decode().split("<oddHeader>")[1]
+    header = markup.unescape(header.split("</oddHeader>")[0])
+    assert example.PROOF in header
+    assert len(header) <= 255
