@@ -350,12 +350,10 @@ def _rule_words(rule: clauses.Rule) -> str:
 
 
 def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded, risk: RiskTable) -> tuple[str, ...]:
-    units = stock.request.units
-    now = stock.fit.biomass[-1]
+    part = stock.fit.biomass[-1] / stock.fit.model.K
     said = [
-        f"The stock now is put at {now:,.0f} {units.unit},"
-        f" {now / stock.fit.model.K:.0%} of what there would be without any take.",
-        f"The rule gives {quantities.amount_text(by_rule, base=units.base, unit_code=units.unit)}.",
+        f"The stock now is put at {part:.0%} of what there would be without any take.",
+        f"The rule gives {stock.read_units(by_rule):,.0f} {stock.request.units.unit}.",
         *(f"The book allows {bound}, so the proposal stops there." for bound in kept.words),
         *_risk_words(risk),
     ]
@@ -366,16 +364,13 @@ def _reasons(stock: _Stock, by_rule: int, kept: bounds.Bounded, risk: RiskTable)
 
 
 def _risk_words(risk: RiskTable) -> tuple[str, ...]:
-    """Return what the board has to know where the proposal passes the risk that it accepts."""
-    if not any(row.breaks and row.label == "proposed" for row in risk.rows):
+    """Return what the board has to know where even the rule passes the risk that it accepts."""
+    if risk.at_most is None or risk.under_rule <= risk.at_most:
         return ()
-    assert risk.at_most is not None, "only a bound is passed"
-    chance = next(row.chance_below for row in risk.rows if row.label == "proposed")
     return (
-        f"Taken every season, whatever comes, the proposal would bring the stock below"
+        f"Even where the rule sets the take anew each season, the stock comes below"
         f" {risk.limit_words} at some time in {risk.horizon_years} seasons with a chance of"
-        f" {chance:.1%}; the book accepts {risk.at_most:.1%}. Where the rule sets the take anew"
-        f" each season, the chance is {risk.under_rule:.1%}.",
+        f" {risk.under_rule:.1%}; the book accepts {risk.at_most:.1%}.",
     )
 
 
