@@ -63,6 +63,7 @@ def advise(*, commons_id: int, season: str, hand: Hand) -> Advice:
         kind="advice_made",
         facts={
             "season": season,
+            "resource": opened.resource,
             "clause": clause.head.id,
             "edition": book.edition,
             "proposed": advice.proposed,

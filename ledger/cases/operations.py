@@ -193,6 +193,7 @@ def _note(commons_id: int, finding: judgement.FindingRecord, hand: Hand) -> int:
     writing.append_event(
         commons_id=commons_id,
         case=number,
+        ladder=ladder_id,
         place=1,
         event=event,
         resting=finding,
@@ -258,6 +259,7 @@ def _advance(
     writing.append_event(
         commons_id=kept.commons_id,
         case=before.number,
+        ladder=before.ladder,
         place=place,
         event=event,
         resting=_resting(before, event.move),

@@ -24,10 +24,35 @@ from ledger.seasons import queries as seasons
 RENEWING = frozenset({Move.NOTE, Move.CHECK, Move.SET_ASIDE, Move.TELL, Move.RETURN_TO_CHECKING})
 
 
+# What the entry of a move says beside the details of its event.
+NO_DETAILS = frozenset(
+    {
+        "actor",
+        "appeal",
+        "case",
+        "clause",
+        "edition",
+        "effects",
+        "finding",
+        "inputs",
+        "ladder",
+        "on",
+        "role",
+        "version",
+    }
+)
+
+
+def kind_of(move: Move) -> str:
+    """Return the kind of a move's entry."""
+    return f"case_{move.value}"
+
+
 def append_event(
     *,
     commons_id: int,
     case: int,
+    ladder: str,
     place: int,
     event: Event,
     resting: judgement.FindingRecord,
@@ -44,6 +69,8 @@ def append_event(
     key = resting.finding.key
     facts: dict[str, Fact] = {
         "case": case,
+        "ladder": ladder,
+        "on": event.on.isoformat(),
         "finding": resting.number,
         "version": resting.version,
         "inputs": resting.finding.inputs,
@@ -62,7 +89,7 @@ def append_event(
         }
     receipt = commons.enter(
         commons_id=commons_id,
-        kind=f"case_{event.move.value}",
+        kind=kind_of(event.move),
         facts=facts,
         texts={columns.REASON: event.reason} if event.reason else {},
         subject=key.subject,

@@ -126,14 +126,18 @@ def found(
     )
     journal.open_journal(commons_id=commons_id, clock=hand.clock, chance=hand.chance)
     facts: dict[str, Fact] = {
+        "slug": slug,
+        "name": name,
+        "demo": is_demo,
         "zone": zone,
         "money": money,
         "resources": [
             {
                 "code": resource.code,
+                "name": resource.name,
                 "unit": resource.unit,
                 "base": resource.base,
-                "zones": [code for code, _ in resource.zones],
+                "zones": [{"code": code, "name": called} for code, called in resource.zones],
             }
             for resource in resources
         ],

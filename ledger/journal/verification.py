@@ -25,16 +25,29 @@ _TILE_LEVELS_MAX = 8
 _PROBLEMS_MAX = 1_000
 
 
+MEANINGS = {
+    "I1": "entries are numbered without gap, in the order of time",
+    "I2": "entries and tree give the head",
+    "I3": "postings sum to zero",
+    "I4": "balances are the sums of postings",
+    "I5": "nothing sealed was changed",
+}
+"""Each invariant of a journal in words."""
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Problem:
-    """One broken invariant: which, at which entry if it is one entry's, and what differs."""
+    """One broken invariant: which, at which entry if it is one entry's, and what differs.
+
+    ``invariant`` is a code of ``MEANINGS``, or the plain name of a table beside the entries.
+    """
 
     invariant: str
     number: int | None
     what: str
 
     def __str__(self) -> str:
-        place = "" if self.number is None else f" entry {self.number:,}:"
+        place = ":" if self.number is None else f" entry {self.number:,}:"
         return f"{self.invariant}{place} {self.what}"
 
 

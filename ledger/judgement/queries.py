@@ -79,6 +79,16 @@ def by_number(*, commons_id: int, numbers: Collection[int]) -> Mapping[int, Find
     return {row.finding: _record(row) for row in rows.order_by("finding", "version")}
 
 
+def version_facts(*, commons_id: int) -> dict[tuple[int, int], dict[str, object]]:
+    """Return what each kept version of a finding, by (number, version), was made from."""
+    names = ("clause", "edition", "subject", "inputs")
+    rows = models.FindingVersion.objects.filter(commons_id=commons_id)
+    return {
+        (number, version): dict(zip(names, facts, strict=True))
+        for number, version, *facts in rows.values_list("finding", "version", *names)
+    }
+
+
 def finding(*, commons_id: int, number: int, version: int | None = None) -> FindingRecord:
     """Return a finding by number: one version of it, or the last."""
     rows = models.FindingVersion.objects.filter(commons_id=commons_id, finding=number)

@@ -186,9 +186,11 @@ class TestJournal:
         assert numbers == list(range(1, journal.head(commons_id=season.commons_id).size + 1))
 
     def test_verify_finds_it_sound(self, season: PlayedSeason) -> None:
-        said = io.StringIO()
-        call_command("verify", journal=[season.commons_id], stdout=said, stderr=io.StringIO())
+        said, progress = io.StringIO(), io.StringIO()
+        call_command("verify", journal=[season.commons_id], stdout=said, stderr=progress)
         assert said.getvalue().endswith(": sound\n")
+        # The last that are compared: only where the tables that the judge reads are sound.
+        assert "the findings against the entries" in progress.getvalue()
         assert season.figures.proof in said.getvalue()
 
     def test_every_head_of_the_season_is_a_prefix_of_the_last(self, season: PlayedSeason) -> None:

@@ -50,16 +50,32 @@ class TestFound:
         (entry,) = journal_queries.entries(commons_id=commons_id)
         assert (entry.number, entry.kind, entry.by) == (1, "commons_founded", builders.SECRETARY)
         assert entry.facts == {
+            "slug": "reed-bank",
+            "name": "Reed Bank Commons",
+            "demo": False,
             "zone": "Europe/Dublin",
             "money": "EUR",
             "resources": [
                 {
                     "code": "mullet",
+                    "name": "Bay mullet",
                     "unit": "kg",
                     "base": "g",
-                    "zones": ["inner_flats", "outer_bay"],
+                    "zones": [
+                        {"code": "inner_flats", "name": "Inner flats"},
+                        {"code": "outer_bay", "name": "Outer bay"},
+                    ],
                 },
-                {"code": "clams", "unit": "kg", "base": "g", "zones": ["mill_reach", "pier_sand"]},
+                {
+                    "code": "clams",
+                    "name": "Clams",
+                    "unit": "kg",
+                    "base": "g",
+                    "zones": [
+                        {"code": "mill_reach", "name": "Mill Reach"},
+                        {"code": "pier_sand", "name": "Pier Sand"},
+                    ],
+                },
             ],
         }
         assert entry.postings == ()

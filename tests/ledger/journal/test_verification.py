@@ -18,6 +18,7 @@ from ledger.foundation.statements import Statement
 from ledger.journal import columns, models, operations, queries, tree, verification
 from ledger.journal.leaves import Receipt
 from tests.conftest import CommittingDatabase
+from tests.ledger.falsifying import falsify as _tamper
 from tests.ledger.journal.conftest import COMMONS, Append
 from tests.ledger.journal.drafts import draft, posting
 
@@ -32,20 +33,6 @@ def _verify() -> tuple[verification.Problem, ...]:
 def _found() -> tuple[str, int | None]:
     first = _verify()[0]
     return first.invariant, first.number
-
-
-def _tamper(sql: str, *values: object) -> None:
-    """Do what only somebody at the database can: drop the triggers, change rows, put them back."""
-    with connection.cursor() as cursor:
-        for name in triggers._definitions(connection):
-            if connection.vendor != "postgresql":
-                cursor.execute(f"DROP TRIGGER {name}")
-            elif name.endswith("_rows"):
-                cursor.execute(
-                    f"ALTER TABLE {name.removesuffix('_sealed_rows')} DISABLE TRIGGER {name}"
-                )
-    statements.run(Statement(sql=sql, values=values))
-    triggers.install_triggers(connection)
 
 
 @pytest.fixture
@@ -318,8 +305,11 @@ class TestCommand:
         with pytest.raises(CommandError, match=r"posting is stopped: journal 1$") as left:
             call_command("verify")
         assert left.value.returncode == 1
-        first, second = capsys.readouterr().out.splitlines()
-        assert "broken: I2 entry 12: its columns do not give the leaf hash" in first
+        first, problem, second = capsys.readouterr().out.splitlines()
+        assert first.endswith(": broken")
+        assert problem.startswith(
+            "  I2 (entries and tree give the head) entry 12: its columns do not give the leaf hash"
+        )
         assert second.endswith("sound")
         with pytest.raises(operations.JournalStopped):
             append(draft())
@@ -353,7 +343,7 @@ class TestProcess:
         _tamper("UPDATE journal_posting SET amount = 9 WHERE number = 3 AND line = 0")
         broken = _run_verify(committing_db)
         assert broken.returncode == 1
-        assert "broken: I2 entry 3:" in broken.stdout
+        assert "  I2 (entries and tree give the head) entry 3: " in broken.stdout
         assert queries.why_stopped(commons_id=COMMONS).startswith("I2 entry 3:")
 
 
