@@ -126,7 +126,7 @@ def found(
     )
     journal.open_journal(commons_id=commons_id, clock=hand.clock, chance=hand.chance)
     facts: dict[str, Fact] = {
-        "slug": slug,
+        # The short name is this installation's own and not of the commons: it stays outside.
         "name": name,
         "demo": is_demo,
         "zone": zone,

@@ -36,7 +36,6 @@ def _kept_founding(commons_id: int) -> Iterator[Row]:
     for commons in models.Commons.objects.filter(pk=commons_id):
         yield _commons(
             _FOUNDING,
-            slug=commons.slug,
             name=commons.name,
             zone=commons.zone,
             money=commons.money,
@@ -103,7 +102,7 @@ def _told(entry: EntryRecord) -> Iterable[Row]:
 
 def _told_founding(entry: EntryRecord) -> Iterator[Row]:
     facts = entry.facts
-    named = ("slug", "name", "zone", "money", "demo")
+    named = ("name", "zone", "money", "demo")
     yield _commons(entry.number, **{name: facts[name] for name in named})
     for resource in facts["resources"]:
         code = resource["code"]

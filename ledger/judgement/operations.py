@@ -113,8 +113,11 @@ def close_season(*, commons_id: int, season: str, hand: Hand) -> Receipt:
     :raises ledger.seasons.operations.SeasonAlreadyClosed: if it was closed before.
     """
     journal.hold(commons_id=commons_id)
+    until = seasons_queries.season(commons_id=commons_id, code=season).during.until
     today = commons.commons(commons_id=commons_id).day_of(hand.clock())
-    judge(commons_id=commons_id, as_of=today - timedelta(days=1), hand=hand)
+    # Duties of the season are judged as of the day after it, also when it closes on that day.
+    as_of = max(today - timedelta(days=1), until) if today >= until else today
+    judge(commons_id=commons_id, as_of=as_of, hand=hand)
     return settle_season(commons_id=commons_id, season=season, hand=hand)
 
 

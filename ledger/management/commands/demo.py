@@ -7,15 +7,14 @@ from typing import Any
 
 from django.conf import settings
 from django.core.management.base import BaseCommand, CommandError
-from django.db import IntegrityError, connection
-from django.db.migrations.executor import MigrationExecutor
+from django.db import IntegrityError
 
 from ledger.cases import queries as cases
 from ledger.commons import queries as commons
 from ledger.commons.operations import AlreadyKept
 from ledger.foundation.clocks import seeded_chance
 from ledger.journal import queries as journal
-from ledger.management import playing, scenario
+from ledger.management import playing, ready, scenario
 from ledger.management.scenario_cells import ScenarioError
 from ledger.management.scenario_records import Scenario
 from ledger.management.stage import Play
@@ -47,7 +46,7 @@ class Command(BaseCommand):
 
     def handle(self, *args: Any, **options: Any) -> None:
         """Play, tell, write."""
-        _check_tables()
+        ready.check_tables()
         started = monotonic()
         try:
             files.check_folder(Path(settings.OUTPUT))
@@ -104,12 +103,6 @@ class Command(BaseCommand):
         )
         self.stderr.flush()
         return size
-
-
-def _check_tables() -> None:
-    executor = MigrationExecutor(connection)
-    if executor.migration_plan(executor.loader.graph.leaf_nodes()):
-        raise CommandError("The database has no tables yet, or old ones: run migrate first.")
 
 
 def begun(story: Scenario) -> tuple[str, Play]:

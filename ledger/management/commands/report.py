@@ -9,6 +9,7 @@ from django.core.management.base import BaseCommand, CommandError, CommandParser
 
 from governance.errors import StintbookError
 from ledger.commons import queries as commons
+from ledger.management import ready
 from ledger.reports import collecting, files
 from ledger.reports.figures import SeasonFigures, digest
 
@@ -20,7 +21,6 @@ class Command(BaseCommand):
         "Make the report of a closed season as HTML, PDF and XLSX, and print the proof line and"
         " the digest of its figures. The same head gives the same digest."
     )
-    requires_migrations_checks = True
 
     def add_arguments(self, parser: CommandParser) -> None:
         """Take the commons, the season and the folder."""
@@ -40,6 +40,7 @@ class Command(BaseCommand):
     def handle(self, *, commons: str, season: str, output: str | None, **options: Any) -> None:
         """Look whether there is a place to write, then make the report."""
         first = _day(season)
+        ready.check_tables()
         folder = Path(settings.OUTPUT) / commons / season if output is None else Path(output)
         try:
             figures = _made(slug=commons, first=first, folder=folder)

@@ -50,7 +50,6 @@ class TestFound:
         (entry,) = journal_queries.entries(commons_id=commons_id)
         assert (entry.number, entry.kind, entry.by) == (1, "commons_founded", builders.SECRETARY)
         assert entry.facts == {
-            "slug": "reed-bank",
             "name": "Reed Bank Commons",
             "demo": False,
             "zone": "Europe/Dublin",

@@ -55,7 +55,6 @@ def test_an_honest_commons_is_sound(bay: scene.Scene) -> None:
 
 
 CHANGES = [
-    ("UPDATE commons_commons SET slug = 'red-bank'", "commons", 1),
     ("UPDATE commons_commons SET name = 'Red Bank'", "commons", 1),
     ("UPDATE commons_commons SET zone = 'Europe/Paris'", "commons", 1),
     ("UPDATE commons_commons SET money = 'GBP'", "commons", 1),

@@ -314,6 +314,16 @@ class TestClose:
         bay.clock.set(datetime(2026, 6, 28, 23, 0, tzinfo=UTC))
         close(bay)
 
+    def test_on_the_first_possible_day_the_duties_of_the_season_are_judged_too(
+        self, bay: scene.Scene
+    ) -> None:
+        """Nobody gave a minute of the twelve hours that every licensed member owes."""
+        bay.clock.set(datetime(2026, 6, 28, 23, 0, tzinfo=UTC))
+        close(bay)
+        found = queries.latest(commons_id=bay.commons_id)
+        assert {key.clause for key in found} == {"6.1"}
+        assert {record.finding.breach for record in found.values()} == {720}
+
     def test_it_is_refused_while_the_judge_has_not_read_everything(self, bay: scene.Scene) -> None:
         bay.morning(AFTER)
         bay.judges(AFTER)
