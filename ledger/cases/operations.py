@@ -8,7 +8,7 @@ from typing import ClassVar
 from governance import periods
 from governance.bylaws import clauses
 from governance.sanctions import clocks, ladder, moves, procedure
-from governance.sanctions.moves import Move, Role, State
+from governance.sanctions.moves import Move, Need, Role, State
 from governance.sanctions.record import Actor, CaseSoFar, Delivery, Event
 from ledger.bylaws import queries as bylaws
 from ledger.cases import models, queries, writing
@@ -25,6 +25,8 @@ OFFICES = frozenset({Role.SECRETARY, Role.MONITOR, Role.BOARD, Role.AUDITOR})
 # Moves that need the very finding that was told of, and moves that need one at all.
 SETTLING = frozenset({Move.DECIDE, Move.UPHOLD, Move.LET_STAND})
 CARRYING_ON = SETTLING | {Move.TELL}
+# What a move may need of whoever makes it, for which it matters who watched.
+JUDGED_FAIR = frozenset({Need.OFFICER, Need.IMPARTIAL})
 THE_COMPUTER = Actor(role=Role.BOOK, member=None)
 
 
@@ -238,7 +240,9 @@ def _moved(before: queries.CaseRecord, act: Act, hand: Hand) -> CaseSoFar:
     event = replace(
         event,
         concerns_board=_concerns_board(kept.commons_id, before.so_far.subjects, event.on),
-        monitors=_watching(kept.commons_id, before),
+        monitors=_watching(kept.commons_id, before)
+        if JUDGED_FAIR & set(moves.row_of(event.move).needs)
+        else frozenset(),
     )
     if event.move in (Move.TELL, Move.DECIDE):
         event = _with_step(kept.commons_id, before, event)

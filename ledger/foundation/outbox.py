@@ -62,6 +62,11 @@ def due(*, at: datetime, commons_id: int | None = None, limit: int) -> list[DueJ
     return [_due_job(job) for job in _open_by(at, commons_id)[:limit]]
 
 
+def is_due(*, at: datetime, commons_id: int | None = None) -> bool:
+    """Return whether an open job is due by an instant."""
+    return _open_by(at, commons_id).exists()
+
+
 @transactions.required
 def claim(*, at: datetime, commons_id: int | None = None) -> DueJob | None:
     """Return the job that is longest due and keep it from other workers to the transaction's end.

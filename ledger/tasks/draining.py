@@ -34,7 +34,7 @@ def drain(*, clock: Clock, chance: Chance, commons_id: int | None = None) -> Ite
     Each job's effect commits together with its mark, so it happens once; what another worker has
     in hand is left to it. A job that fails leaves nothing behind and rings again later.
     """
-    while outbox.due(at=clock(), commons_id=commons_id, limit=1):
+    while outbox.is_due(at=clock(), commons_id=commons_id):
         done = _next(clock=clock, chance=chance, commons_id=commons_id)
         if done is None:
             return

@@ -2,7 +2,9 @@
 
 from datetime import date, timedelta
 
-from ledger.cases import queries
+from django.db import transaction
+
+from ledger.cases import operations, queries
 from ledger.cases.operations import Act
 from tests.ledger import builders, scene
 from tests.ledger.builders import line
@@ -94,13 +96,14 @@ def final(bay: scene.Scene, case: int, told_on: date, *, member: int = 5) -> dat
     """Walk a noted case to its finality without appeal; return the day it became final.
 
     It is answered, decided and explained on the day after it was told; the 21 days to appeal begin
-    then, and the job rings as the day after the last begins.
+    then, and the deadline is rung as the day after the last begins.
     """
     told(bay, case, told_on)
     day = told_on + timedelta(days=1)
     appeal_opened(bay, case, day, member=member)
     last = day + timedelta(days=22)
     bay.midnight(last)
-    bay.drains()
+    with transaction.atomic():
+        operations.ring(commons_id=bay.commons_id, case=case, hand=bay.hand)
     assert bay.case(case).so_far.final_on == last
     return last

@@ -92,3 +92,26 @@ def test_promising_needs_a_transaction_and_goes_back_with_it(
         _promise(ticking_clock, "a")
         transaction.set_rollback(True)
     assert outbox.due(at=ticking_clock(), limit=1) == []
+
+
+@pytest.mark.django_db
+def test_the_longest_due_is_claimed_until_it_is_done(ticking_clock: TickingClock) -> None:
+    for key, days in (("later", 1), ("second", -1), ("first", -2)):
+        _promise(ticking_clock, key, days=days)
+    for key in ("first", "second"):
+        assert outbox.is_due(at=ticking_clock(), commons_id=1)
+        job = outbox.claim(at=ticking_clock(), commons_id=1)
+        assert job is not None
+        assert job.key == key
+        outbox.mark_done(job_id=job.id, outcome="", at=ticking_clock())
+    assert not outbox.is_due(at=ticking_clock())
+    assert outbox.claim(at=ticking_clock()) is None
+
+
+@pytest.mark.django_db
+def test_a_claim_is_of_one_commons_where_it_is_named(ticking_clock: TickingClock) -> None:
+    _promise(ticking_clock, "theirs", commons_id=2)
+    assert outbox.claim(at=ticking_clock(), commons_id=1) is None
+    assert not outbox.is_due(at=ticking_clock(), commons_id=1)
+    job = outbox.claim(at=ticking_clock())
+    assert job is not None and job.key == "theirs"
