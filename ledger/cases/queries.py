@@ -43,8 +43,8 @@ class CaseRecord:
     """A case: what it rests on and where it stands.
 
     ``version`` is the finding's version that the last event rests on; ``effects`` are the entries
-    that carried the decision out; ``told_on`` and ``decided_on`` are kept through a return to
-    checking, for the record of how long things took.
+    that carried the decision out. A return to checking forgets what was told and decided; the
+    events keep it.
     """
 
     commons_id: int
@@ -56,11 +56,6 @@ class CaseRecord:
     events: tuple[record.Event, ...]
     entries: tuple[int, ...]
     effects: tuple[int, ...]
-
-    @property
-    def noted_on(self) -> date:
-        """Return the day that the case was noted."""
-        return self.events[0].on
 
 
 def cases(

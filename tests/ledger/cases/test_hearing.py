@@ -26,7 +26,7 @@ class TestNote:
         assert case.so_far.state is State.NOTED
         assert case.ladder == "ladder.overdraw"
         assert case.so_far.told_on is None
-        assert case.noted_on == MONDAY
+        assert case.events[0].on == MONDAY
 
     def test_a_household_finding_concerns_all_of_it(self, bay: scene.Scene) -> None:
         case = bay.case(walks.noted(bay, MONDAY, member=6))
