@@ -249,6 +249,14 @@ def holders_of(*, commons_id: int, role: str, day: date) -> frozenset[int]:
     return frozenset(rows.values_list("member", flat=True))
 
 
+def roles_of(*, commons_id: int, member: int, day: date) -> frozenset[str]:
+    """Return the roles that a member holds on a day."""
+    rows = models.RoleHeld.objects.filter(
+        commons_id=commons_id, member=member, first_day__lte=day, until_day__gt=day
+    )
+    return frozenset(rows.values_list("role", flat=True))
+
+
 def household_of(*, commons_id: int, household: int) -> frozenset[int]:
     """Return the member numbers of a household."""
     rows = models.Member.objects.filter(commons_id=commons_id, household=household)

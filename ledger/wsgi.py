@@ -1,0 +1,9 @@
+"""What a web server calls."""
+
+import os
+
+from django.core.wsgi import get_wsgi_application
+
+os.environ.setdefault("DJANGO_SETTINGS_MODULE", "ledger.settings")
+
+application = get_wsgi_application()
