@@ -32,6 +32,16 @@ class NotAWithdrawal(LedgerError):
     message: ClassVar[str] = "Found entry {number} to be a {kind}; accepted is a withdrawal."
 
 
+class UndoneAfterClose(LedgerError):
+    """A slip of a closed season cannot be undone without the right one beside it."""
+
+    code: ClassVar[str] = "movements.undone_after_close"
+    message: ClassVar[str] = (
+        "Entry {number} counts in a season that is closed; accepted is to correct it by the right"
+        " slip, which keeps the accounts of that season as they were reported."
+    )
+
+
 class NothingGiven(LedgerError):
     """A contribution, a payment or what is given back is not above zero."""
 
@@ -61,14 +71,14 @@ def record_withdrawals(
 ) -> tuple[Receipt, ...]:
     """Record slips in order, one entry each; what breaks a bylaw is recorded all the same.
 
-    The same slip number twice adds nothing and returns the first receipt. All are recorded or none:
-    what :func:`ledger.movements.writing.withdrawal` refuses in one slip is raised for all.
+    The same key of a device twice adds nothing and returns the first receipt, and so does the same
+    slip number twice at the desk. All are recorded or none: what :func:`ledger.movements.writing.withdrawal` refuses in one slip is raised for all.
 
     :raises ledger.journal.operations.KeyReused: if a slip number stands for another content.
     """
     journal.hold(commons_id=commons_id)
     kept = writing.kept(commons_id=commons_id)
-    drafts = [writing.withdrawal(kept=kept, slip=slip, key=slip.slip) for slip in slips]
+    drafts = [writing.withdrawal(kept=kept, slip=slip, key=slip.key or slip.slip) for slip in slips]
     try:
         return _append(commons_id, drafts, hand)
     except journal.KeyReused:
@@ -109,6 +119,35 @@ def correct_withdrawal(
     )
     (redone,) = _append(commons_id, [right], hand)
     return undone, redone
+
+
+@transactions.required
+def undo_withdrawal(*, commons_id: int, number: int, reason: str, hand: Hand) -> Receipt:
+    """Reverse a recorded slip that should not be there, such as one that was entered twice.
+
+    :raises NotAWithdrawal: if the entry is of another kind.
+    :raises UndoneAfterClose: if the slip counts in a season that was closed.
+    :raises ledger.journal.queries.EntryNotFound: if there is no such entry.
+    :raises ledger.journal.operations.AlreadyReversed: if it was corrected before.
+    """
+    journal.hold(commons_id=commons_id)
+    wrong = journal_queries.entry(commons_id=commons_id, number=number)
+    if wrong.kind != queries.WITHDRAWAL:
+        raise NotAWithdrawal(number=number, kind=wrong.kind)
+    kept = writing.kept(commons_id=commons_id)
+    if any(writing.told_apart(kept=kept, undone=wrong)):
+        raise UndoneAfterClose(number=number)
+    now = hand.clock()
+    return journal.reverse(
+        commons_id=commons_id,
+        number=number,
+        reason=reason,
+        by=hand.by,
+        occurred_at=now,
+        day=kept.commons.day_of(now),
+        clock=hand.clock,
+        chance=hand.chance,
+    )
 
 
 @transactions.required
@@ -344,19 +383,18 @@ def undo_give_back(*, commons_id: int, number: int, reason: str, hand: Hand) -> 
 
 def _as_posted(commons_id: int, drafts: Sequence[Draft]) -> list[Draft]:
     """Return slips with the accounts that they were posted to, where they stand already."""
-    keys = [draft.key for draft in drafts if draft.key is not None]
-    numbers = journal_queries.numbers_by_key(commons_id=commons_id, device=writing.DESK, keys=keys)
-    return [
-        replace(
-            draft,
-            postings=journal_queries.entry(
-                commons_id=commons_id, number=numbers[draft.key]
-            ).postings,
-        )
-        if draft.key in numbers
-        else draft
-        for draft in drafts
-    ]
+    return [_with_standing_postings(commons_id, draft) for draft in drafts]
+
+
+def _with_standing_postings(commons_id: int, draft: Draft) -> Draft:
+    assert draft.key is not None, "every slip that is recorded has a key"
+    numbers = journal_queries.numbers_by_key(
+        commons_id=commons_id, device=draft.device, keys=[draft.key]
+    )
+    if draft.key not in numbers:
+        return draft
+    standing = journal_queries.entry(commons_id=commons_id, number=numbers[draft.key])
+    return replace(draft, postings=standing.postings)
 
 
 def _append(commons_id: int, drafts: Sequence[Draft], hand: Hand) -> tuple[Receipt, ...]:

@@ -90,7 +90,11 @@ class Line:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Slip:
-    """One landing slip: who took what, where and when, and when the slip was handed in."""
+    """One landing slip: who took what, where and when, and when the slip was handed in.
+
+    The same ``key`` from the same ``device`` is the same slip for ever; at the secretary's desk the
+    slip's own number is the key.
+    """
 
     slip: str
     member: int
@@ -99,6 +103,8 @@ class Slip:
     draw_point: str
     lines: tuple[Line, ...]
     note: str = ""
+    device: str = DESK
+    key: str | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -182,7 +188,7 @@ def withdrawal(*, kept: Kept, slip: Slip, key: str | None, also: Iterable[Postin
         },
         postings=(*postings, *also),
         texts={"note": slip.note} if slip.note else {},
-        device=DESK,
+        device=slip.device,
         key=key,
     )
 
