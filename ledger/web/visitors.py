@@ -138,3 +138,30 @@ def visitor_by_token(*, token: accounts.TokenRecord, slug: str, now: datetime) -
         scopes=token.scopes,
         device=f"{token.member}:{token.device}",
     )
+
+
+# What the secretary may write down for others: what a member says, and what the assembly decided.
+_SPOKEN = frozenset({"answer", "lodge_appeal"})
+
+
+def may_move_case(
+    visitor: Visitor, *, move: str, role: str, member: int | None, concerned: frozenset[int]
+) -> None:
+    """Pass if the visitor may make or write down a move in a case.
+
+    Whoever holds an office acts in it themself; so nobody decides in another's name.
+
+    :param member: the member who acts, or None for the assembly.
+    :param concerned: the members whom the case concerns.
+    :raises NotYours: if not.
+    """
+    if role == "member":
+        own = member == visitor.member and member in concerned
+        written_down = move in _SPOKEN and visitor.holds(SECRETARY) and member in concerned
+        allowed = own or written_down
+    elif role == "assembly":
+        allowed = visitor.holds(SECRETARY)
+    else:
+        allowed = role in OFFICES and visitor.holds(role) and member in (None, visitor.member)
+    if not allowed:
+        raise NotYours(needed=f"to act as {role} yourself", found=visitor.title)
