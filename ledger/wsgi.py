@@ -4,6 +4,11 @@ import os
 
 from django.core.wsgi import get_wsgi_application
 
+from ledger.foundation import durability, logs
+
 os.environ.setdefault("DJANGO_SETTINGS_MODULE", "ledger.settings")
 
 application = get_wsgi_application()
+logs.begin()
+# A server must not take slips into a database that might lose them.
+durability.check()
