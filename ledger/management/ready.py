@@ -4,7 +4,8 @@ from pathlib import Path
 
 from django.core.management.base import CommandError
 from django.db import OperationalError, connection
-from django.db.migrations.executor import MigrationExecutor
+
+from ledger.foundation import tables
 
 
 def check_tables() -> None:
@@ -18,11 +19,10 @@ def check_tables() -> None:
     if connection.vendor == "sqlite" and ":memory:" not in name and not Path(name).exists():
         raise CommandError(f"There is no book at {name} yet: run migrate first.")
     try:
-        executor = MigrationExecutor(connection)
-        missing = executor.migration_plan(executor.loader.graph.leaf_nodes())
+        current = tables.are_current()
     except OperationalError as error:
         raise CommandError(does_not_answer(error)) from error
-    if missing:
+    if not current:
         raise CommandError("The database has no tables yet, or old ones: run migrate first.")
 
 

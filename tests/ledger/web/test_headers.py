@@ -71,6 +71,7 @@ def test_every_address_carries_them() -> None:
         assert response.headers["Cache-Control"], address
 
 
+@pytest.mark.django_db
 def test_a_static_file_carries_them_and_may_be_kept() -> None:
     response = Client().get("/static/stintbook/book.css")
     assert response.status_code == 200
