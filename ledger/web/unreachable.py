@@ -1,9 +1,8 @@
-"""What is answered while the database or the doorbell cannot be reached: come again later."""
+"""What is answered while the database cannot be reached: come again later."""
 
 import logging
 from collections.abc import Callable
 
-import redis
 from django.db import InterfaceError, OperationalError
 from django.http import HttpRequest, HttpResponse, JsonResponse
 
@@ -24,10 +23,9 @@ class Unreachable:
 
     def process_exception(self, request: HttpRequest, exception: Exception) -> HttpResponse | None:
         """Return the answer, if the exception is of this kind."""
-        outages = (OperationalError, InterfaceError, redis.ConnectionError, redis.TimeoutError)
-        if not isinstance(exception, outages):
+        if not isinstance(exception, OperationalError | InterfaceError):
             return None
-        _log.error("A service behind this one does not answer: %s", type(exception).__name__)
+        _log.error("The database does not answer: %s", type(exception).__name__)
         return answer(is_api=request.path.startswith("/api/"))
 
 

@@ -1,8 +1,7 @@
-"""A service behind this one that does not answer: come again, and no more than that."""
+"""A database that does not answer: come again, and no more than that."""
 
 import pytest
-import redis
-from django.db import OperationalError
+from django.db import InterfaceError, OperationalError
 from django.http import HttpRequest, HttpResponse
 from django.test import Client
 from django.urls import path
@@ -12,11 +11,11 @@ def _database(request: HttpRequest) -> HttpResponse:
     raise OperationalError("connection to server at 10.0.0.7 failed")
 
 
-def _doorbell(request: HttpRequest) -> HttpResponse:
-    raise redis.ConnectionError("10.0.0.8")
+def _connection(request: HttpRequest) -> HttpResponse:
+    raise InterfaceError("connection is closed")
 
 
-urlpatterns = [path("page", _database), path("api/v1/thing", _doorbell)]
+urlpatterns = [path("page", _database), path("api/v1/thing", _connection)]
 pytestmark = pytest.mark.urls(__name__)
 
 
