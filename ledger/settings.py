@@ -176,8 +176,25 @@ ACCOUNT_EMAIL_VERIFICATION = "none"
 MFA_SUPPORTED_TYPES = ["totp", "recovery_codes"]
 
 REST_FRAMEWORK = {
-    "DEFAULT_SCHEMA_CLASS": "drf_spectacular.openapi.AutoSchema",
+    "DEFAULT_SCHEMA_CLASS": "ledger.api.schema.ProblemSchema",
     "DEFAULT_RENDERER_CLASSES": ["rest_framework.renderers.JSONRenderer"],
+    "DEFAULT_THROTTLE_CLASSES": ["rest_framework.throttling.UserRateThrottle"],
+    "DEFAULT_THROTTLE_RATES": {"user": "1200/minute"},
+    "EXCEPTION_HANDLER": "ledger.api.problems.handle",
+    "UNAUTHENTICATED_USER": None,
+}
+SPECTACULAR_SETTINGS = {
+    "TITLE": "Stintbook",
+    "DESCRIPTION": (
+        "Keeps the book of a commons. Amounts are texts; instants carry their offset. Sanctions are"
+        " decided by people and fall under the law of the place; advice replaces neither a licensed"
+        " professional nor an authority's limits."
+    ),
+    "VERSION": "1",
+    "OAS_VERSION": "3.1.1",
+    "SCHEMA_PATH_PREFIX": "/api/v1",
+    "COMPONENT_SPLIT_REQUEST": True,
+    "POSTPROCESSING_HOOKS": ["ledger.api.schema.close"],
 }
 
 # WAL files of SQLite before 3.51.3 can be damaged by a rare race of two connections
@@ -250,6 +267,24 @@ CELERY_BROKER_CONNECTION_RETRY_ON_STARTUP = True
 CELERY_TASK_IGNORE_RESULT = True
 CELERY_TASK_ACKS_LATE = True
 CELERY_TASK_REJECT_ON_WORKER_LOST = True
+# A ring works for a minute or so, and then lets the next go on; half an hour ends one that hangs.
+CELERY_TASK_TIME_LIMIT = 30 * 60
+# Redis hands a ring out again after so long: twice the limit, so that none is in work twice. Each
+# client reads it in its own place, and the shortest would win.
+CELERY_VISIBILITY_TIMEOUT = 2 * CELERY_TASK_TIME_LIMIT
+CELERY_BROKER_TRANSPORT_OPTIONS = {
+    "visibility_timeout": CELERY_VISIBILITY_TIMEOUT,
+    # Of a bell in memory.
+    "polling_interval": 0.1,
+    # Of a bell on Redis: a post must not wait long for one that is dead.
+    "socket_connect_timeout": 1,
+    "socket_timeout": 5,
+    "max_retries": 1,
+    "interval_start": 0,
+}
+CELERY_RESULT_BACKEND_TRANSPORT_OPTIONS = {"visibility_timeout": CELERY_VISIBILITY_TIMEOUT}
+# What is in work when the service stops may end in this time.
+CELERY_WORKER_SOFT_SHUTDOWN_TIMEOUT = 60.0
 CELERY_WORKER_PREFETCH_MULTIPLIER = 1
 CELERY_WORKER_HIJACK_ROOT_LOGGER = False
 CELERY_BEAT_SCHEDULE = {"ring": {"task": "stintbook.ring", "schedule": 30.0}}

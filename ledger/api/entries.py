@@ -1,7 +1,7 @@
 """Recording, reading and undoing entries."""
 
 import base64
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from datetime import timedelta
 from typing import Any, ClassVar
 
@@ -12,7 +12,7 @@ from rest_framework.request import Request
 from rest_framework.response import Response
 
 from governance.errors import StintbookError
-from ledger.api import answers, fields, pages, preconditions, problems
+from ledger.api import answers, cursors, fields, preconditions
 from ledger.api.views import CommonsView
 from ledger.foundation.clocks import system_clock
 from ledger.foundation.errors import LedgerError
@@ -75,32 +75,10 @@ class ReversalIn(fields.StrictSerializer):
     slip = SlipIn(required=False)
 
 
-class Withdrawals(CommonsView):
-    """Slips one at a time."""
+class Recording(CommonsView):
+    """Whatever records slips."""
 
-    scopes: ClassVar[dict[str, str]] = {"POST": identity.RECORD}
-
-    @extend_schema(
-        operation_id="record_withdrawal",
-        request=SlipIn,
-        responses={201: answers.ReceiptOut, 200: answers.ReceiptOut},
-        parameters=[
-            OpenApiParameter(
-                "Idempotency-Key",
-                {"type": "string", "minLength": 1, "maxLength": 255, "pattern": "^[!-~]+$"},
-                OpenApiParameter.HEADER,
-                required=True,
-            )
-        ],
-    )
-    def post(self, request: Request, slug: str) -> Response:
-        """Record a withdrawal. The same key again records nothing and gives the same receipt."""
-        key = preconditions.key(request)
-        given = SlipIn(data=request.data)
-        given.is_valid(raise_exception=True)
-        (receipt,) = self.record([self.slip(given.validated_data, key=key)])
-        code = status.HTTP_200_OK if receipt.replayed else status.HTTP_201_CREATED
-        return Response(answers.receipt(receipt), status=code)
+    scopes: ClassVar[Mapping[str, str]] = {"POST": identity.RECORD}
 
     def slip(self, given: dict[str, Any], *, key: str | None) -> Slip:
         """Return a slip as the book takes it.
@@ -142,7 +120,33 @@ class Withdrawals(CommonsView):
             )
 
 
-class WithdrawalBatch(Withdrawals):
+class Withdrawals(Recording):
+    """Slips one at a time."""
+
+    @extend_schema(
+        operation_id="record_withdrawal",
+        request=SlipIn,
+        responses={201: answers.ReceiptOut, 200: answers.ReceiptOut},
+        parameters=[
+            OpenApiParameter(
+                "Idempotency-Key",
+                {"type": "string", "minLength": 1, "maxLength": 255, "pattern": "^[!-~]+$"},
+                OpenApiParameter.HEADER,
+                required=True,
+            )
+        ],
+    )
+    def post(self, request: Request, slug: str) -> Response:
+        """Record a withdrawal. The same key again records nothing and gives the same receipt."""
+        key = preconditions.key(request)
+        given = SlipIn(data=request.data)
+        given.is_valid(raise_exception=True)
+        (receipt,) = self.record([self.slip(given.validated_data, key=key)])
+        code = status.HTTP_200_OK if receipt.replayed else status.HTTP_201_CREATED
+        return Response(answers.receipt(receipt), status=code)
+
+
+class WithdrawalBatch(Recording):
     """Many slips in one call, as a device hands them in that was away from the network."""
 
     @extend_schema(
@@ -188,7 +192,7 @@ class WithdrawalBatch(Withdrawals):
             return error
 
 
-class Reversal(Withdrawals):
+class Reversal(Recording):
     """Undoing a slip."""
 
     @extend_schema(
@@ -228,16 +232,16 @@ class Entries(CommonsView):
 
     @extend_schema(
         operation_id="list_entries",
-        parameters=pages.PARAMETERS,
+        parameters=cursors.PARAMETERS,
         responses={200: answers.EntriesOut},
     )
     def get(self, request: Request, slug: str) -> Response:
         """List entries from the oldest; ``next`` leads on and never misses or repeats one."""
-        asked = pages.asked(request)
+        asked = cursors.asked(request)
         member = asked.member
         if member is not None and not self.visitor.sees_entry_about(member):
             raise NotHere(what="member")
-        return pages.answer(request, visitor=self.visitor, asked=asked)
+        return cursors.answer(request, visitor=self.visitor, asked=asked)
 
 
 class OneEntry(CommonsView):
@@ -272,9 +276,7 @@ class EntryReceipt(CommonsView):
             raise NotHere(what="entry")
         head = journal.head(commons_id=self.commons_id)
         leaf = journal.receipt_leaf(commons_id=self.commons_id, number=number)
-        path = journal.inclusion_proof(
-            commons_id=self.commons_id, number=number, size=head.size
-        )
+        path = journal.inclusion_proof(commons_id=self.commons_id, number=number, size=head.size)
         return Response(
             {
                 "number": number,

@@ -44,7 +44,7 @@ class StrictSerializer(serializers.Serializer[Any]):
     }
 )
 class Amount(serializers.Field[Decimal, Any, str, Any]):
-    """An amount as a text of decimal digits with a point; never a number, which would be rounded."""
+    """An amount as a text of decimal digits with a point; a number would be rounded on the way."""
 
     def to_internal_value(self, data: Any) -> Decimal:
         """Return the amount.
@@ -63,7 +63,12 @@ class Amount(serializers.Field[Decimal, Any, str, Any]):
 
 
 @extend_schema_field(
-    {"type": "string", "format": "date-time", "maxLength": 40, "example": "2026-03-02T07:30:00+00:00"}
+    {
+        "type": "string",
+        "format": "date-time",
+        "maxLength": 40,
+        "example": "2026-03-02T07:30:00+00:00",
+    }
 )
 class Instant(serializers.Field[datetime, Any, str, Any]):
     """An instant with its offset from UTC, as RFC 3339 writes it."""

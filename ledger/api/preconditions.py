@@ -8,7 +8,7 @@ from rest_framework.request import Request
 from ledger.foundation.errors import LedgerError
 
 KEY_SIGNS_MAX = 255
-_KEY = re.compile(r'[!-~]{1,255}')
+_KEY = re.compile(r"[!-~]{1,255}")
 
 
 class KeyMissing(LedgerError):

@@ -18,8 +18,10 @@ MEDIA_TYPE = "application/problem+json"
 STATUS_OF: Mapping[str, int] = {
     **dict.fromkeys(
         (
+            "api.no_advice",
             "cases.unknown_case",
             "commons.unknown_commons",
+            "identity.unknown_token",
             "journal.entry_not_found",
             "judgement.unknown_finding",
             "movements.unknown_slip",

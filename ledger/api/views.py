@@ -1,6 +1,7 @@
 """What every address of the API has in common: who calls, in which commons, with which reach."""
 
-from typing import Any
+from collections.abc import Mapping
+from typing import Any, ClassVar
 
 from rest_framework.permissions import IsAuthenticated
 from rest_framework.request import Request
@@ -25,7 +26,7 @@ class CommonsView(APIView):
     authentication_classes = (TokenAuthentication,)
     permission_classes = (IsAuthenticated,)
     parser_classes = (StrictJSONParser,)
-    scopes: dict[str, str] = {}  # noqa: RUF012 (a table of the class, never changed)
+    scopes: ClassVar[Mapping[str, str]] = {}
     visitor: Visitor
 
     def initial(self, request: Request, *args: Any, **kwargs: Any) -> None:

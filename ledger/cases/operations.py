@@ -119,6 +119,15 @@ def hear(*, commons_id: int, findings: Sequence[int], hand: Hand) -> int:
 
 
 @transactions.required
+def hold(*, commons_id: int) -> None:
+    """Keep every case as it stands until the transaction ends, so that what was read still holds.
+
+    :raises ledger.journal.queries.JournalNotOpen: if the commons has no journal.
+    """
+    journal.hold(commons_id=commons_id)
+
+
+@transactions.required
 def move(*, commons_id: int, case: int, act: Act, hand: Hand) -> CaseSoFar:
     """Make one move in a case, and carry a decision out when it becomes final.
 

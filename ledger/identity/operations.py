@@ -29,6 +29,13 @@ class NoSeat(LedgerError):
     message: ClassVar[str] = "Member {member} has no account; accepted is one who holds a card."
 
 
+class UnknownToken(LedgerError):
+    """The account has no such token, or ended it before."""
+
+    code: ClassVar[str] = "identity.unknown_token"
+    message: ClassVar[str] = "Found no token {found} of yours that holds."
+
+
 @transactions.required
 def open_account(
     *, username: str, commons_id: int, member: int, clock: Clock, chance: Chance
@@ -94,3 +101,16 @@ def issue_token(
         expires_at=now + TOKEN_HOLDS,
     )
     return secret
+
+
+@transactions.required
+def end_token(*, account_id: int, token_id: int, clock: Clock) -> None:
+    """End a token of an account; it opens nothing from now on.
+
+    :raises UnknownToken: if the account has no such token that holds.
+    """
+    ended = models.Token.objects.filter(
+        pk=token_id, seat__account_id=account_id, ended_at__isnull=True
+    ).update(ended_at=clock())
+    if not ended:
+        raise UnknownToken(found=token_id)

@@ -3,6 +3,7 @@
 from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from datetime import date
+from typing import ClassVar
 
 from django.db.models import Max
 
@@ -12,9 +13,17 @@ from governance.compliance.findings import Finding, Key, SubjectKind
 from governance.periods import DateRange
 from ledger.bylaws import queries as bylaws
 from ledger.commons import queries as commons
+from ledger.foundation.errors import LedgerError
 from ledger.judgement import columns, models
 from ledger.movements import queries as movements
 from ledger.seasons import queries as seasons
+
+
+class UnknownFinding(LedgerError):
+    """The commons has no finding of this number."""
+
+    code: ClassVar[str] = "judgement.unknown_finding"
+    message: ClassVar[str] = "Found no finding {found}."
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -172,8 +181,20 @@ def judged(
     )
 
 
+def standing_about(*, commons_id: int, members: Collection[int]) -> tuple[FindingRecord, ...]:
+    """Return the findings that stand about some members or the households named after them."""
+    numbers = numbers_about(commons_id=commons_id, members=members)
+    found = by_number(commons_id=commons_id, numbers=numbers).values()
+    return tuple(record for record in found if record.standing)
+
+
 def explained(*, commons_id: int, number: int) -> tuple[str, ...]:
-    """Return a finding opened in words, down to entries and clause."""
+    """Return a finding opened in words, down to entries and clause.
+
+    :raises UnknownFinding: if there is none of this number.
+    """
+    if not by_number(commons_id=commons_id, numbers=(number,)):
+        raise UnknownFinding(found=number)
     record = finding(commons_id=commons_id, number=number)
     editions = bylaws.adopted(commons_id=commons_id).books
     book = next(book for book in editions if book.edition == record.finding.edition)

@@ -85,6 +85,13 @@ class Visitor:
         """Return whether the visitor may see all members' rows, not group totals alone."""
         return self.holds(SECRETARY, BOARD, AUDITOR)
 
+    def household(self) -> frozenset[int]:
+        """Return the members of the visitor's household, the visitor among them."""
+        members = commons.members(commons_id=self.commons.commons_id)
+        return commons.household_of(
+            commons_id=self.commons.commons_id, household=members[self.member].household
+        )
+
     def records_takes_of(self, member: int) -> bool:
         """Return whether the visitor may record a withdrawal of a member."""
         return member == self.member or self.holds(SECRETARY, MONITOR)
