@@ -77,7 +77,7 @@ class _Book(Collector):
         now = system_clock()
         waiting = outbox.backlog(at=now)
         age = (now - waiting.oldest_due_at).total_seconds() if waiting.oldest_due_at else 0
-        yield GaugeMetricFamily("stintbook_jobs_due", "Jobs due and not done.", waiting.due)
+        yield GaugeMetricFamily("stintbook_jobs_due", "Jobs due and not done.", waiting.open_due)
         yield GaugeMetricFamily("stintbook_jobs_parked", "Jobs given up.", waiting.parked)
         yield GaugeMetricFamily("stintbook_job_oldest_seconds", "Age of the oldest due job.", age)
         entries = GaugeMetricFamily(
