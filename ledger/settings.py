@@ -274,11 +274,9 @@ CELERY_TASK_TIME_LIMIT = 30 * 60
 CELERY_VISIBILITY_TIMEOUT = 2 * CELERY_TASK_TIME_LIMIT
 CELERY_BROKER_TRANSPORT_OPTIONS = {
     "visibility_timeout": CELERY_VISIBILITY_TIMEOUT,
-    # Of a bell in memory.
-    "polling_interval": 0.1,
-    # Of a bell on Redis: a post must not wait long for one that is dead.
+    # A post must not wait long for a broker that is dead.
     "socket_connect_timeout": 1,
-    "socket_timeout": 5,
+    "socket_timeout": 3,
     "max_retries": 1,
     "interval_start": 0,
 }

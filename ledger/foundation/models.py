@@ -15,7 +15,10 @@ class Job(models.Model):
     done_at = models.DateTimeField(null=True)
     outcome = models.TextField(default="")
     attempts = models.PositiveIntegerField(default=0)
+    # Attempts in a row that began and never ended, because the worker went down in them.
+    unended = models.PositiveIntegerField(default=0)
     last_error = models.TextField(default="")
+    parked_at = models.DateTimeField(null=True)
 
     class Meta:
         constraints = (

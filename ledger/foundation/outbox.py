@@ -5,13 +5,15 @@ from dataclasses import dataclass
 from datetime import datetime
 from typing import Any, ClassVar
 
-from django.db import connection
-from django.db.models import F, QuerySet
+from django.db.models import Count, Min, Q, QuerySet
 
-from ledger.foundation import transactions
+from ledger.foundation import ringing, transactions
 from ledger.foundation.clocks import Clock
 from ledger.foundation.errors import LedgerError
 from ledger.foundation.models import Job
+
+# A job in which so many workers in a row went down is left to a person.
+UNENDED_ATTEMPTS = 5
 
 
 class JobNotOpen(LedgerError):
@@ -34,6 +36,24 @@ class DueJob:
     attempts: int
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ParkedJob:
+    """A job that rings no more until a person has looked at it, and why."""
+
+    job: DueJob
+    parked_at: datetime
+    last_error: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Backlog:
+    """How much promised work is overdue at an instant, since when, and how much is parked."""
+
+    open_due: int
+    oldest_due_at: datetime | None
+    parked: int
+
+
 @transactions.required
 def enqueue(
     *,
@@ -46,14 +66,19 @@ def enqueue(
 ) -> bool:
     """Promise a job and return whether it is new; the same commons, kind and key are one job.
 
+    A job that is due already rings the bell of the workers once this transaction is committed.
+
     :raises NoTransaction: outside a transaction.
     """
+    now = clock()
     _, is_new = Job.objects.get_or_create(
         commons_id=commons_id,
         kind=kind,
         key=key,
-        defaults={"due_at": due_at, "payload": dict(payload), "enqueued_at": clock()},
+        defaults={"due_at": due_at, "payload": dict(payload), "enqueued_at": now},
     )
+    if is_new and due_at <= now:
+        ringing.after_commit()
     return is_new
 
 
@@ -62,22 +87,56 @@ def due(*, at: datetime, commons_id: int | None = None, limit: int) -> list[DueJ
     return [_due_job(job) for job in _open_by(at, commons_id)[:limit]]
 
 
-def is_due(*, at: datetime, commons_id: int | None = None) -> bool:
-    """Return whether an open job is due by an instant."""
-    return _open_by(at, commons_id).exists()
+def parked(*, commons_id: int | None = None) -> list[ParkedJob]:
+    """Return the jobs that were parked, the longest parked first."""
+    jobs = Job.objects.filter(done_at__isnull=True, parked_at__isnull=False)
+    if commons_id is not None:
+        jobs = jobs.filter(commons_id=commons_id)
+    return [
+        ParkedJob(job=_due_job(job), parked_at=job.parked_at, last_error=job.last_error)
+        for job in jobs.order_by("parked_at", "id")
+        if job.parked_at is not None
+    ]
+
+
+def backlog(*, at: datetime) -> Backlog:
+    """Return what is overdue at an instant in all commons, and what is parked."""
+    overdue = Q(parked_at__isnull=True, due_at__lte=at)
+    figures = Job.objects.filter(done_at__isnull=True).aggregate(
+        open_due=Count("id", filter=overdue),
+        oldest_due_at=Min("due_at", filter=overdue),
+        parked=Count("id", filter=Q(parked_at__isnull=False)),
+    )
+    return Backlog(**figures)
 
 
 @transactions.required
-def claim(*, at: datetime, commons_id: int | None = None) -> DueJob | None:
-    """Return the job that is longest due and keep it from other workers to the transaction's end.
+def begin(*, job_id: int, at: datetime) -> DueJob | None:
+    """Count an attempt, in a transaction that is committed before the work begins.
 
-    None means that nothing is due but what others have in hand.
+    So an attempt in which the worker goes down is counted too, and the job that brings it down is
+    parked after so many in a row. None means that there is nothing to do: the job is no longer
+    due, or it was parked.
     """
-    free = _open_by(at, commons_id).select_for_update(
-        skip_locked=connection.features.has_select_for_update_skip_locked
-    )
-    job = free.first()
-    return None if job is None else _due_job(job)
+    job = _open_by(at, None).filter(pk=job_id).select_for_update().first()
+    if job is None:
+        return None
+    if job.unended >= UNENDED_ATTEMPTS:
+        job.parked_at = at
+        job.last_error = f"The worker went down in each of the last {job.unended} attempts."
+        job.save(update_fields=["parked_at", "last_error"])
+        return None
+    job.attempts += 1
+    job.unended += 1
+    job.save(update_fields=["attempts", "unended"])
+    return _due_job(job)
+
+
+@transactions.required
+def hold(*, job_id: int) -> bool:
+    """Keep a job from others to the transaction's end; return whether it is still open."""
+    job = Job.objects.select_for_update().filter(pk=job_id, done_at__isnull=True).first()
+    return job is not None
 
 
 @transactions.required
@@ -87,7 +146,7 @@ def mark_done(*, job_id: int, outcome: str, at: datetime) -> None:
     :raises JobNotOpen: if it was done before; the transaction should then be given up.
     """
     closed = Job.objects.filter(pk=job_id, done_at__isnull=True).update(
-        done_at=at, outcome=outcome, attempts=F("attempts") + 1
+        done_at=at, outcome=outcome, unended=0
     )
     if not closed:
         raise JobNotOpen(job_id=job_id)
@@ -95,19 +154,21 @@ def mark_done(*, job_id: int, outcome: str, at: datetime) -> None:
 
 @transactions.required
 def mark_failed(*, job_id: int, error: str, again_at: datetime) -> None:
-    """Note a failed attempt and when the job is to ring again.
+    """Note why an attempt failed, and when the job is to ring again.
 
     :raises JobNotOpen: if it is done.
     """
     noted = Job.objects.filter(pk=job_id, done_at__isnull=True).update(
-        attempts=F("attempts") + 1, last_error=error, due_at=again_at
+        unended=0, last_error=error, due_at=again_at
     )
     if not noted:
         raise JobNotOpen(job_id=job_id)
 
 
 def _open_by(at: datetime, commons_id: int | None) -> QuerySet[Job]:
-    jobs = Job.objects.filter(done_at__isnull=True, due_at__lte=at).order_by("due_at", "id")
+    jobs = Job.objects.filter(
+        done_at__isnull=True, parked_at__isnull=True, due_at__lte=at
+    ).order_by("due_at", "id")
     return jobs if commons_id is None else jobs.filter(commons_id=commons_id)
 
 

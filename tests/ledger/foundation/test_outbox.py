@@ -47,8 +47,13 @@ def test_due_in_order_and_up_to_the_limit(ticking_clock: TickingClock) -> None:
 def test_done_once(ticking_clock: TickingClock) -> None:
     _promise(ticking_clock, "a")
     (job,) = outbox.due(at=ticking_clock(), limit=1)
+    begun = outbox.begin(job_id=job.id, at=ticking_clock())
+    assert begun is not None and begun.attempts == 1
+    assert outbox.hold(job_id=job.id)
     outbox.mark_done(job_id=job.id, outcome="judged", at=ticking_clock())
     assert outbox.due(at=ticking_clock(), limit=1) == []
+    assert outbox.begin(job_id=job.id, at=ticking_clock()) is None
+    assert not outbox.hold(job_id=job.id)
     with pytest.raises(outbox.JobNotOpen):
         outbox.mark_done(job_id=job.id, outcome="judged", at=ticking_clock())
     with pytest.raises(outbox.JobNotOpen):
@@ -61,6 +66,7 @@ def test_done_once(ticking_clock: TickingClock) -> None:
 def test_a_failed_job_rings_again(ticking_clock: TickingClock) -> None:
     _promise(ticking_clock, "a")
     (job,) = outbox.due(at=ticking_clock(), limit=1)
+    outbox.begin(job_id=job.id, at=ticking_clock())
     again_at = ticking_clock() + timedelta(hours=1)
     outbox.mark_failed(job_id=job.id, error="no figures", again_at=again_at)
     assert outbox.due(at=ticking_clock(), limit=1) == []
@@ -95,23 +101,58 @@ def test_promising_needs_a_transaction_and_goes_back_with_it(
 
 
 @pytest.mark.django_db
-def test_the_longest_due_is_claimed_until_it_is_done(ticking_clock: TickingClock) -> None:
-    for key, days in (("later", 1), ("second", -1), ("first", -2)):
-        _promise(ticking_clock, key, days=days)
-    for key in ("first", "second"):
-        assert outbox.is_due(at=ticking_clock(), commons_id=1)
-        job = outbox.claim(at=ticking_clock(), commons_id=1)
-        assert job is not None
-        assert job.key == key
-        outbox.mark_done(job_id=job.id, outcome="", at=ticking_clock())
-    assert not outbox.is_due(at=ticking_clock())
-    assert outbox.claim(at=ticking_clock()) is None
+def test_a_job_is_not_begun_before_it_is_due(ticking_clock: TickingClock) -> None:
+    _promise(ticking_clock, "a", days=1)
+    job = Job.objects.get()
+    assert outbox.begin(job_id=job.pk, at=ticking_clock()) is None
+    job.refresh_from_db()
+    assert job.attempts == 0
 
 
 @pytest.mark.django_db
-def test_a_claim_is_of_one_commons_where_it_is_named(ticking_clock: TickingClock) -> None:
-    _promise(ticking_clock, "theirs", commons_id=2)
-    assert outbox.claim(at=ticking_clock(), commons_id=1) is None
-    assert not outbox.is_due(at=ticking_clock(), commons_id=1)
-    job = outbox.claim(at=ticking_clock())
-    assert job is not None and job.key == "theirs"
+def test_a_job_whose_attempts_never_end_is_parked_and_stays_visible(
+    ticking_clock: TickingClock,
+) -> None:
+    _promise(ticking_clock, "bad")
+    _promise(ticking_clock, "good")
+    bad, _ = outbox.due(at=ticking_clock(), limit=2)
+    for attempt in range(1, 6):
+        begun = outbox.begin(job_id=bad.id, at=ticking_clock())
+        assert begun is not None and begun.attempts == attempt
+    assert outbox.begin(job_id=bad.id, at=ticking_clock()) is None
+    assert [job.key for job in outbox.due(at=ticking_clock(), limit=9)] == ["good"]
+    (parked,) = outbox.parked(commons_id=1)
+    assert (parked.job.key, parked.parked_at) == ("bad", ticking_clock())
+    assert "went down in each of the last 5 attempts" in parked.last_error
+    assert outbox.parked(commons_id=2) == []
+
+
+@pytest.mark.django_db
+def test_attempts_that_end_are_not_counted_towards_parking(ticking_clock: TickingClock) -> None:
+    """A job that fails in words, or is done, ended: only workers that go down count."""
+    _promise(ticking_clock, "a")
+    (job,) = outbox.due(at=ticking_clock(), limit=1)
+    for _ in range(4):
+        outbox.begin(job_id=job.id, at=ticking_clock())
+    outbox.mark_failed(job_id=job.id, error="no figures", again_at=ticking_clock())
+    for attempt in range(5, 10):
+        begun = outbox.begin(job_id=job.id, at=ticking_clock())
+        assert begun is not None and begun.attempts == attempt
+    assert outbox.parked() == []
+
+
+@pytest.mark.django_db
+def test_the_backlog_counts_what_is_overdue_and_what_is_parked(
+    ticking_clock: TickingClock,
+) -> None:
+    nothing = outbox.Backlog(open_due=0, oldest_due_at=None, parked=0)
+    assert outbox.backlog(at=ticking_clock()) == nothing
+    for key, days in (("old", -3), ("now", 0), ("later", 1), ("done", -9), ("parked", -8)):
+        _promise(ticking_clock, key, days=days)
+    done, stuck, *_ = outbox.due(at=ticking_clock(), limit=9)
+    outbox.mark_done(job_id=done.id, outcome="", at=ticking_clock())
+    for _ in range(6):
+        outbox.begin(job_id=stuck.id, at=ticking_clock())
+    assert outbox.backlog(at=ticking_clock()) == outbox.Backlog(
+        open_due=2, oldest_due_at=ticking_clock() - timedelta(days=3), parked=1
+    )
