@@ -6,5 +6,5 @@ from celery import Celery
 
 os.environ.setdefault("DJANGO_SETTINGS_MODULE", "ledger.settings")
 
-app = Celery("stintbook", include=["ledger.tasks.bell"])
+app = Celery("stintbook", include=["ledger.tasks.bell", "ledger.tasks.starting"])
 app.config_from_object("django.conf:settings", namespace="CELERY")

@@ -3,6 +3,7 @@
 import os
 
 from django.core.wsgi import get_wsgi_application
+from django.db import connection
 
 from ledger.foundation import durability, logs
 
@@ -12,3 +13,5 @@ application = get_wsgi_application()
 logs.begin()
 # A server must not take slips into a database that might lose them.
 durability.check()
+# The threads that answer open their own connections.
+connection.close()
