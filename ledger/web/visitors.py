@@ -10,6 +10,7 @@ from typing import ClassVar
 
 from ledger.commons import queries as commons
 from ledger.commons.queries import CommonsRecord
+from ledger.foundation import logs
 from ledger.foundation.errors import LedgerError
 from ledger.identity import operations as identity
 from ledger.identity import queries as accounts
@@ -117,6 +118,7 @@ def visitor(*, account_id: int, slug: str, now: datetime) -> Visitor:
     seat = accounts.seat(account_id=account_id, commons_id=kept.commons_id)
     if seat is None:
         raise NotHere(what="commons")
+    logs.note(account=account_id, commons=kept.commons_id, member=seat.member)
     return Visitor(
         account_id=account_id,
         commons=kept,
@@ -132,6 +134,7 @@ def visitor_by_token(*, token: accounts.TokenRecord, slug: str, now: datetime) -
 
     :raises NotHere: if the commons is another.
     """
+    logs.note(account=token.account_id, commons=token.commons_id, member=token.member)
     kept = commons.commons(commons_id=token.commons_id)
     if kept.slug != slug:
         raise NotHere(what="commons")
