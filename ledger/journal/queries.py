@@ -5,7 +5,7 @@ from collections.abc import Collection, Iterable, Iterator
 from datetime import UTC, date, datetime
 from typing import ClassVar
 
-from django.db.models import Exists, F, OuterRef, Sum
+from django.db.models import Exists, F, OuterRef, Q, Sum
 from django.db.models.lookups import LessThanOrEqual
 
 from ledger.foundation.errors import LedgerError
@@ -145,6 +145,34 @@ def entries(
         )
         for sealed in part:
             yield sealed.record(reversed_by=reversed_by.get(sealed.number))
+
+
+def newest(
+    *,
+    commons_id: int,
+    below: int,
+    limit: int,
+    kind: str | None = None,
+    subject: int | None = None,
+    own: int | None = None,
+) -> list[EntryRecord]:
+    """Return the last entries numbered below a number, newest first.
+
+    :param subject: only those about this member.
+    :param own: only those about this member or about nobody.
+    """
+    found = models.Entry.objects.filter(commons_id=commons_id, number__lt=below)
+    if kind is not None:
+        found = found.filter(kind=kind)
+    if subject is not None:
+        found = found.filter(subject=subject)
+    if own is not None:
+        found = found.filter(Q(subject=own) | Q(subject__isnull=True))
+    numbers = list(found.order_by("-number").values_list("number", flat=True)[:limit])
+    sealed = columns.sealed_by_number(commons_id=commons_id, numbers=numbers)
+    size = head(commons_id=commons_id).size
+    reversed_by = columns.reversals(commons_id=commons_id, numbers=numbers, up_to=size)
+    return [sealed[number].record(reversed_by=reversed_by.get(number)) for number in numbers]
 
 
 def rows(

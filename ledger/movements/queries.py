@@ -154,6 +154,23 @@ def money_instead(
     )
 
 
+def left_on(*, commons_id: int, member: int, resource: str, day: date) -> int | None:
+    """Return what a member may still take, in base units, of the season that a day lies in.
+
+    Below zero when overdrawn; None if no open season of the resource holds the day.
+    """
+    opened = seasons.seasons(commons_id=commons_id)
+    season = seasons.holding(opened=opened, resource=resource, day=day)
+    if season is None or season.closed:
+        return None
+    return journal.balance(
+        commons_id=commons_id,
+        account=seasons.left_account(season=season.code, member=member),
+        resource=resource,
+        unit=commons.resource(commons_id=commons_id, code=resource).base,
+    )
+
+
 def entry_of_slip(*, commons_id: int, slip: str) -> int:
     """Return the number of the standing entry that a slip was recorded by.
 

@@ -9,6 +9,7 @@ from django.core.exceptions import PermissionDenied
 from django.http import Http404, HttpRequest, HttpResponse
 from django.shortcuts import render
 
+from ledger.commons import queries as commons
 from ledger.foundation.clocks import system_clock
 from ledger.journal import queries as journal
 from ledger.web import visitors
@@ -43,7 +44,23 @@ def page(view: View[Arguments], /) -> Callable[..., HttpResponse]:
 def show(
     request: HttpRequest, visitor: Visitor, template: str, /, *, status: int = 200, **context: Any
 ) -> HttpResponse:
-    """Return a page with the commons at its head and the journal's proof line at its foot."""
+    """Return a page with the commons at its head, and at its foot whom to ask and the proof line."""
     head = journal.head(commons_id=visitor.commons.commons_id)
-    shown = {"visitor": visitor, "proof": journal.proof_line(head), **context}
+    shown = {
+        "visitor": visitor,
+        "watches": visitor.holds(*visitors.OFFICES),
+        "lists_members": visitor.holds(visitors.SECRETARY, visitors.BOARD, visitors.MONITOR),
+        "secretaries": _secretaries(visitor),
+        "proof": journal.proof_line(head),
+        **context,
+    }
     return render(request, template, shown, status=status)
+
+
+def _secretaries(visitor: Visitor) -> list[str]:
+    """Return the names of those whom a member asks for help, who hold the office today."""
+    commons_id = visitor.commons.commons_id
+    today = visitor.commons.day_of(system_clock())
+    held = commons.holders_of(commons_id=commons_id, role=visitors.SECRETARY, day=today)
+    members = commons.members(commons_id=commons_id)
+    return [members[number].name for number in sorted(held)]
