@@ -14,6 +14,7 @@ from tests.bench import rounds
 BENCHES = (
     "posting",
     "posting_batch",
+    "http",
     "judging",
     "projection",
     "projection_bent",
