@@ -4,10 +4,11 @@ from collections.abc import Callable
 from functools import wraps
 from typing import Any, Concatenate, ParamSpec
 
+from allauth.mfa.utils import is_mfa_enabled
 from django.contrib.auth.decorators import login_required
 from django.core.exceptions import PermissionDenied
 from django.http import Http404, HttpRequest, HttpResponse
-from django.shortcuts import render
+from django.shortcuts import redirect, render
 
 from ledger.commons import queries as commons
 from ledger.foundation.clocks import system_clock
@@ -32,6 +33,8 @@ def page(view: View[Arguments], /) -> Callable[..., HttpResponse]:
         assert account_id is not None, "nobody gets here without signing in"
         try:
             visitor = visitors.visitor(account_id=account_id, slug=slug, now=system_clock())
+            if _lacks_second_factor(request, visitor):
+                return redirect("mfa_activate_totp")
             return view(request, visitor, *args, **kwargs)
         except visitors.NotHere as error:
             raise Http404(str(error)) from error
@@ -41,10 +44,17 @@ def page(view: View[Arguments], /) -> Callable[..., HttpResponse]:
     return shown
 
 
+def _lacks_second_factor(request: HttpRequest, visitor: Visitor) -> bool:
+    """Return whether the visitor holds an office in a real commons by a password alone."""
+    if visitor.commons.is_demo or not visitor.holds(*visitors.OFFICES):
+        return False
+    return not is_mfa_enabled(request.user)
+
+
 def show(
     request: HttpRequest, visitor: Visitor, template: str, /, *, status: int = 200, **context: Any
 ) -> HttpResponse:
-    """Return a page with the commons at its head, and at its foot whom to ask and the proof line."""
+    """Return a page: the commons at its head, whom to ask and the proof line at its foot."""
     head = journal.head(commons_id=visitor.commons.commons_id)
     shown = {
         "visitor": visitor,

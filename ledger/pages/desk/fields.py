@@ -58,7 +58,7 @@ class TimeField(forms.CharField):
             return None
         found = _TIME.fullmatch(text)
         try:
-            return time(*map(int, found.groups())) if found else self._refuse()
+            return time(int(found[1]), int(found[2])) if found else self._refuse()
         except ValueError:
             return self._refuse()
 

@@ -17,9 +17,9 @@ LINES = 4
 _NO_SUCH_TIME = "On that day the clocks skipped this time; an earlier or a later one is accepted."
 
 
-def text(widget: type[forms.TextInput] = forms.TextInput, **attributes: Any) -> forms.TextInput:
+def text(**attributes: Any) -> forms.TextInput:
     """Return a plain box that no browser fills in by itself."""
-    return widget(attrs={"autocomplete": "off", **attributes})
+    return forms.TextInput(attrs={"autocomplete": "off", **attributes})
 
 
 class SlipForm(forms.Form):
