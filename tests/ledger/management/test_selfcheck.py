@@ -1,5 +1,6 @@
 """``manage.py selfcheck``: every wrong setting is named at once, and the exit code tells."""
 
+import json
 import os
 import subprocess
 import sys
@@ -130,3 +131,28 @@ def test_a_malformed_variable_is_named(variables: dict[str, str], words: str) ->
     done = _manage("selfcheck", **variables)
     assert done.returncode == 1
     assert words in done.stderr
+
+
+def test_behind_https_cookies_are_taken_from_this_host_alone(tmp_path: Path) -> None:
+    program = (
+        "import django, json; django.setup()\n"
+        "from django.conf import settings as s\n"
+        "names = ('SESSION_COOKIE_NAME', 'SESSION_COOKIE_SECURE', 'SESSION_COOKIE_PATH',"
+        " 'SESSION_COOKIE_DOMAIN', 'SESSION_COOKIE_HTTPONLY', 'SESSION_COOKIE_SAMESITE',"
+        " 'CSRF_COOKIE_NAME', 'CSRF_COOKIE_SECURE', 'SECURE_SSL_REDIRECT', 'SECURE_HSTS_SECONDS')\n"
+        "print(json.dumps([getattr(s, name) for name in names]))"
+    )
+    done = subprocess.run(
+        [sys.executable, "-c", program],
+        cwd=ROOT,
+        env=os.environ
+        | _in_service(f"sqlite:///{tmp_path}/book.sqlite3", tmp_path)
+        | {"DJANGO_SETTINGS_MODULE": "ledger.settings"},
+        capture_output=True,
+        text=True,
+        check=True,
+    )
+    assert json.loads(done.stdout) == [
+        *("__Host-session", True, "/", None, True, "Lax"),
+        *("__Host-csrf", True, True, 31_536_000),
+    ]
