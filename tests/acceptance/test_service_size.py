@@ -21,10 +21,12 @@ from datetime import UTC, datetime, timedelta
 from pathlib import Path
 from typing import Any
 
+import psycopg
 import pytest
 import yaml
 from django.core.management import call_command
 from django.db import connections, transaction
+from psycopg import sql
 
 from governance.periods import OPEN_END, DateRange
 from ledger.commons import operations as commons
@@ -49,6 +51,7 @@ class Service:
     port: int
     fisher: str
     secretary: str
+    database: str
     start: Callable[[str], None]
     processes: dict[str, subprocess.Popen[bytes]]
     folder: Path
@@ -228,6 +231,7 @@ def service(
             port=web_port,
             fisher=fisher,
             secretary=secretary,
+            database=environment["STINTBOOK_DATABASE"].rsplit("/", 1)[1],
             start=start,
             processes=processes,
             folder=tmp_path,
@@ -258,6 +262,15 @@ def test_a_slip_over_the_limit_becomes_a_case(service: Service) -> None:
 
     _the_receipt_holds(service.call(f"{book}/entries/{receipt['number']}/receipt")[1], receipt)
 
+    with _away(service.database):
+        assert service.call("/healthz")[0] == 200
+        assert service.call("/readyz") == (503, "not ready\n")
+        status, problem = service.call(f"{book}/withdrawals", body=slip, Idempotency_Key="k-2")
+        assert (status, problem["status"]) == (503, 503)
+    # Nothing is started again, and nothing was half written.
+    assert service.call(f"{book}/withdrawals", body=slip, Idempotency_Key="k-1")[0] == 200
+    assert service.call(f"{book}/head")[1]["size"] == receipt["size"]
+
     # Ten nights' judging lies due: what was missed while nobody worked is done now.
     assert service.call("/readyz") == (503, "not ready\n")
     for part in ("worker-1", "worker-2", "clock"):
@@ -275,6 +288,21 @@ def test_a_slip_over_the_limit_becomes_a_case(service: Service) -> None:
 
     _all_end_in_good_order(service)
     _the_log_tells_who_and_keeps_secrets(service)
+
+
+@contextmanager
+def _away(name: str) -> Iterator[None]:
+    """Cut every connection to a database for a while, and let no new one in."""
+    allow = sql.SQL("ALTER DATABASE {} ALLOW_CONNECTIONS {}")
+    with psycopg.connect(os.environ[databases.POSTGRESQL], autocommit=True) as server:
+        server.execute(allow.format(sql.Identifier(name), sql.SQL("false")))
+        server.execute(
+            "SELECT pg_terminate_backend(pid) FROM pg_stat_activity WHERE datname = %s", [name]
+        )
+        try:
+            yield
+        finally:
+            server.execute(allow.format(sql.Identifier(name), sql.SQL("true")))
 
 
 def _the_receipt_holds(proof: dict[str, Any], receipt: dict[str, Any]) -> None:
@@ -301,8 +329,9 @@ def _all_end_in_good_order(service: Service) -> None:
 
 def _the_log_tells_who_and_keeps_secrets(service: Service) -> None:
     told = [line for line in service.lines("web") if line.get("route", "").endswith("withdrawals")]
-    assert [(line["method"], line["status"]) for line in told] == [("POST", 201), ("POST", 200)]
-    assert all(line["member"] == FISHER and line["request_id"] for line in told)
+    assert [line["status"] for line in told] == [201, 200, 503, 200]
+    assert all(line["method"] == "POST" and line["request_id"] for line in told)
+    assert [line.get("member") for line in told] == [FISHER, FISHER, None, FISHER]
     assert all(datetime.fromisoformat(line["time"]).tzinfo == UTC for line in told)
     written = "".join(each.read_text("utf-8") for each in service.folder.glob("*.[eo][ru][rt]"))
     assert service.fisher not in written
