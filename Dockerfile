@@ -41,4 +41,5 @@ STOPSIGNAL SIGTERM
 CMD ["gunicorn", "ledger.wsgi:application", \
      "--bind", "0.0.0.0:8000", "--worker-class", "gthread", "--workers", "2", "--threads", "4", \
      "--graceful-timeout", "30", "--timeout", "60", "--max-requests", "10000", \
-     "--max-requests-jitter", "1000", "--worker-tmp-dir", "/dev/shm", "--no-control-socket"]
+     "--max-requests-jitter", "1000", "--worker-tmp-dir", "/dev/shm", "--no-control-socket", \
+     "--log-level", "warning"]

@@ -155,6 +155,7 @@ TEMPLATES = [
 STATIC_URL = "/static/"
 STATIC_ROOT = os.environ.get("STINTBOOK_STATIC") or None
 WHITENOISE_USE_FINDERS = STATIC_ROOT is None
+WHITENOISE_ALLOW_ALL_ORIGINS = False
 STORAGES = {
     "default": {"BACKEND": "django.core.files.storage.FileSystemStorage"},
     "staticfiles": {
@@ -173,7 +174,29 @@ ACCOUNT_USER_MODEL_EMAIL_FIELD = None
 ACCOUNT_LOGIN_METHODS = {"username"}
 ACCOUNT_SIGNUP_FIELDS = ["username*", "password1*"]
 ACCOUNT_EMAIL_VERIFICATION = "none"
+ACCOUNT_ADAPTER = "ledger.identity.adapter.AccountAdapter"
+ACCOUNT_LOGOUT_REDIRECT_URL = "/"
+ACCOUNT_LOGOUT_ON_PASSWORD_CHANGE = False
+ACCOUNT_PREVENT_ENUMERATION = True
+# Minutes of a lock, never for ever: a lock for ever would let anybody shut anybody out.
+ACCOUNT_RATE_LIMITS = {"login": "60/m/ip", "login_failed": "20/5m/ip,10/5m/key"}
 MFA_SUPPORTED_TYPES = ["totp", "recovery_codes"]
+MFA_TOTP_ISSUER = "Stintbook"
+AUTH_PASSWORD_VALIDATORS = [
+    {"NAME": "ledger.identity.passwords.LongEnough"},
+    {"NAME": "ledger.identity.passwords.NotTheName"},
+    {"NAME": "django.contrib.auth.password_validation.CommonPasswordValidator"},
+]
+# Failed attempts are counted in the cache, which all processes of the service size must share.
+CACHES = {
+    "default": {
+        "BACKEND": "django.core.cache.backends.redis.RedisCache",
+        "LOCATION": said("STINTBOOK_BROKER"),
+        "KEY_PREFIX": "stintbook",
+    }
+    if said("STINTBOOK_BROKER")
+    else {"BACKEND": "django.core.cache.backends.locmem.LocMemCache"}
+}
 
 REST_FRAMEWORK = {
     "DEFAULT_SCHEMA_CLASS": "ledger.api.schema.ProblemSchema",

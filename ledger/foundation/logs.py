@@ -69,6 +69,7 @@ _LOGGING: dict[str, Any] = {
         # What was not found or not allowed has its line as a request already.
         "django.request": {"level": "ERROR"},
         "django.server": {"handlers": [], "propagate": True},
+        "gunicorn.error": {"handlers": [], "propagate": True},
     },
 }
 

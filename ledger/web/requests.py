@@ -63,4 +63,4 @@ def _tell(request: HttpRequest, response: HttpResponse, *, seconds: float) -> No
         "status": status,
         "ms": round(seconds * 1000, 1),
     }
-    _log.info("%s %s %s", method, status, template, extra={"facts": facts})
+    _log.info("answered", extra={"facts": facts})

@@ -77,6 +77,7 @@ def test_a_static_file_carries_them_and_may_be_kept() -> None:
     assert response.status_code == 200
     _hardened(response)
     assert "no-store" not in response.headers["Cache-Control"]
+    assert "Access-Control-Allow-Origin" not in response.headers
     response.close()
     _hardened(Client().get("/static/no-such-file"))
 
