@@ -111,6 +111,7 @@ def visitor(*, account_id: int, slug: str, now: datetime) -> Visitor:
 
     :raises NotHere: if there is no such commons, or the account has no seat in it.
     """
+    logs.note(account=account_id)
     try:
         kept = commons.commons_named(slug=slug)
     except commons.UnknownCommons as error:
@@ -118,7 +119,7 @@ def visitor(*, account_id: int, slug: str, now: datetime) -> Visitor:
     seat = accounts.seat(account_id=account_id, commons_id=kept.commons_id)
     if seat is None:
         raise NotHere(what="commons")
-    logs.note(account=account_id, commons=kept.commons_id, member=seat.member)
+    logs.note(commons=kept.commons_id, member=seat.member)
     return Visitor(
         account_id=account_id,
         commons=kept,

@@ -349,6 +349,9 @@ def test_the_compose_file_runs_every_part_from_one_image() -> None:
         assert each["read_only"] is True
         assert each["cap_drop"] == ["ALL"]
         assert set(each["secrets"]) <= set(file["secrets"])
+        assert each["environment"]["STINTBOOK_SECRET_KEY_FILE"] == "/run/secrets/secret_key"
+    figures = services["web"]["environment"]["PROMETHEUS_MULTIPROC_DIR"]
+    assert figures in services["web"]["tmpfs"]
     assert "noeviction" in services["doorbell"]["command"]
     for part in ("web", "worker", "clock"):
         needs = services[part]["depends_on"]
