@@ -44,6 +44,13 @@ def seat(*, account_id: int, commons_id: int) -> SeatRecord | None:
     return None if row is None else _seat(row)
 
 
+def seat_of_member(*, commons_id: int, member: int) -> SeatRecord | None:
+    """Return the seat of a member, if the member has an account."""
+    rows = models.Seat.objects.filter(commons_id=commons_id, member=member)
+    row = rows.select_related("account").first()
+    return None if row is None else _seat(row)
+
+
 def token(*, secret: str, at: datetime) -> TokenRecord | None:
     """Return the token of a secret, if it is one that holds at an instant."""
     row = (

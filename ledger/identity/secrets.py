@@ -17,3 +17,13 @@ def new(chance: Chance) -> str:
 def digest(secret: str) -> bytes:
     """Return what is kept of a secret."""
     return hashlib.sha256(secret.encode("utf-8")).digest()
+
+
+def as_typed(secret: str) -> str:
+    """Return a secret as it was made, from how somebody typed it off paper."""
+    return "".join(sign for sign in secret.lower() if sign.isalnum())
+
+
+def in_groups(secret: str) -> str:
+    """Return a secret as it is printed: in groups of four, which the eye can hold."""
+    return " ".join(secret[place : place + 4] for place in range(0, len(secret), 4))
