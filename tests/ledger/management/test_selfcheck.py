@@ -58,7 +58,7 @@ def test_every_wrong_one_is_named_at_once(tmp_path: Path) -> None:
     done = _manage(
         "selfcheck",
         STINTBOOK_DATABASE=os.environ[POSTGRESQL],
-        STINTBOOK_SECRET_KEY="short",  # noqa: S106
+        STINTBOOK_SECRET_KEY="short",
         STINTBOOK_OUTPUT=str(tmp_path / "output"),
         PGOPTIONS="-c synchronous_commit=off",
     )
