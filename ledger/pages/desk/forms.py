@@ -109,7 +109,8 @@ class SlipForm(forms.Form):
             )
             self.fields[f"place_{place}"] = forms.ChoiceField(
                 label="Of what, and where" if place == 1 else f"Of what, line {place}",
-                choices=places,
+                # Nothing is chosen before anybody chose: a wrong resource would be recorded.
+                choices=[("", "Choose"), *places],
                 error_messages={
                     "required": "One of the list is accepted.",
                     "invalid_choice": "One of the list is accepted.",
@@ -155,6 +156,9 @@ class SlipForm(forms.Form):
     def clean(self) -> dict[str, Any]:
         """Check the times, which nobody can have come to yet, and the lines."""
         given = self.cleaned_data
+        for place in range(2, LINES + 1):
+            if given.get(f"amount_{place}") is not None and not given.get(f"place_{place}"):
+                self.add_error(f"place_{place}", "One of the list is accepted.")
         taken = self._instant("taken")
         handed = self._instant("handed")
         if taken is not None and handed is not None and handed < taken:

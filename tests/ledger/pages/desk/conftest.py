@@ -4,6 +4,7 @@ from collections.abc import Callable
 from datetime import UTC, datetime
 
 import pytest
+from allauth.mfa.models import Authenticator
 from django.db import transaction
 from django.test import Client
 
@@ -42,6 +43,12 @@ def signed_in(reed_bank: int, chance: Chance) -> SignIn:
                 chance=chance,
             )
         seat = Seat.objects.get(commons_id=reed_bank, member=member)
+        # Without a second factor no office is open.
+        Authenticator.objects.create(
+            user_id=seat.account_id,
+            type=Authenticator.Type.TOTP,
+            data={"secret": "JBSWY3DPEHPK3PXP"},
+        )
         client = Client()
         client.force_login(Account.objects.get(pk=seat.account_id))
         return client

@@ -3,8 +3,10 @@
 from datetime import date
 
 import pytest
+from django.db import transaction
 from django.test import Client
 
+from ledger.commons import operations as commons
 from ledger.foundation.clocks import Chance
 from ledger.journal import queries as journal
 from ledger.journal import tree
@@ -43,10 +45,6 @@ def test_officers_and_the_member_see_an_entry(
 def test_a_member_without_office_sees_their_own_and_common_entries_alone(
     signed_in: SignIn, reed_bank: int, landed: int, chance: Chance
 ) -> None:
-    from django.db import transaction
-
-    from ledger.commons import operations as commons
-
     hand = builders.hand(clock=TickingClock(NOW), chance=chance)
     with transaction.atomic():
         commons.admit(commons_id=reed_bank, admissions=[builders.admission(5)], hand=hand)
@@ -80,7 +78,7 @@ def test_a_receipt_proves_its_entry(signed_in: SignIn, reed_bank: int, landed: i
         leaf=bytes.fromhex(shown["leaf"]),
         index=landed - 1,
         size=head.size,
-        path=[bytes.fromhex(each) for each in shown["path"]],
+        proof=[bytes.fromhex(each) for each in shown["path"]],
         root=head.root,
     )
 

@@ -122,6 +122,7 @@ WRONG = [
     ("amount_1", "9" * 29, "accepted"),
     ("amount_2", "some", "decimal point or comma"),
     ("place_1", "", "One of the list"),
+    ("amount_2", "3", "One of the list"),
     ("place_1", "moon", "One of the list"),
     ("taken_on", "", "is needed"),
     ("taken_on", "yesterday", "year, month, day"),
