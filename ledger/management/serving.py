@@ -13,6 +13,7 @@ from typing import Any
 
 from celery.beat import Scheduler, Service
 from celery.worker import WorkController
+from django.conf import settings
 from django.core.wsgi import get_wsgi_application
 from django.db import connection
 from waitress.server import create_server
@@ -40,7 +41,14 @@ def serve(*, address: str, port: int, started: Callable[[str], None]) -> bool:
     """
     stop = stopping.on_signal()
     _ring_in_memory()
-    web = create_server(get_wsgi_application(), host=address, port=port, threads=WEB_THREADS)
+    web = create_server(
+        get_wsgi_application(),
+        host=address,
+        port=port,
+        threads=WEB_THREADS,
+        # Behind HTTPS the proxy says so in a header, which the server would take away otherwise.
+        clear_untrusted_proxy_headers=not settings.HTTPS,
+    )
     clock = Service(app, max_interval=1.0, scheduler_cls=Scheduler)
     ready: queue.Queue[Any] = queue.Queue()
     broken = threading.Event()
