@@ -83,7 +83,10 @@ def enqueue(
 
 
 def due(*, at: datetime, commons_id: int | None = None, limit: int) -> list[DueJob]:
-    """Return up to so many open jobs due by an instant, the longest due first."""
+    """Return up to so many open jobs due by an instant, the longest due first.
+
+    Those in which a worker went down come after all others, so that they hold up none.
+    """
     return [_due_job(job) for job in _open_by(at, commons_id)[:limit]]
 
 
@@ -168,7 +171,7 @@ def mark_failed(*, job_id: int, error: str, again_at: datetime) -> None:
 def _open_by(at: datetime, commons_id: int | None) -> QuerySet[Job]:
     jobs = Job.objects.filter(
         done_at__isnull=True, parked_at__isnull=True, due_at__lte=at
-    ).order_by("due_at", "id")
+    ).order_by("unended", "due_at", "id")
     return jobs if commons_id is None else jobs.filter(commons_id=commons_id)
 
 

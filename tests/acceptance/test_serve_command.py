@@ -16,8 +16,15 @@ from ledger.foundation.models import Job
 from ledger.journal import queries as journal
 from tests.conftest import CommittingDatabase
 from tests.ledger import builders
-from tests.ledger.processes import WAIT_SECONDS, promise, running, wait_for, written
-from tests.ledger.tasks import odd_jobs
+from tests.ledger.processes import (
+    FOLDER,
+    WAIT_SECONDS,
+    free_port,
+    promise,
+    running,
+    wait_for,
+    written,
+)
 
 SERVE = ("-m", "tests.ledger.tasks.odd_jobs", "serve")
 
@@ -27,18 +34,12 @@ def commons_id(committing_db: CommittingDatabase, chance: Chance) -> int:
     return builders.people(hand=builders.hand(clock=system_clock, chance=chance))
 
 
-def _free_port() -> int:
-    with socket.socket() as free:
-        free.bind(("127.0.0.1", 0))
-        return int(free.getsockname()[1])
-
-
 @contextmanager
 def _serving(
     database: CommittingDatabase, folder: Path, *, port: int
 ) -> Iterator[subprocess.Popen[str]]:
     """Serve the test's own database; give the process once it answers."""
-    environment = {"STINTBOOK_DATABASE": database.address, odd_jobs.FOLDER: str(folder)}
+    environment = {"STINTBOOK_DATABASE": database.address, FOLDER: str(folder)}
     with running(*SERVE, "--port", str(port), **environment) as process:
         assert process.stdout is not None
         line = next((line for line in process.stdout if not line.startswith("{")), "")
@@ -63,7 +64,7 @@ def test_what_fell_due_while_it_was_off_is_done_at_its_start_once_and_at_its_tru
     """Twelve jobs fell due in the same second, months before the machine was switched on."""
     for key in range(12):
         promise(commons_id=commons_id, kind="writes", key=f"{key:02}")
-    began, port = system_clock(), _free_port()
+    began, port = system_clock(), free_port()
     with _serving(committing_db, tmp_path, port=port) as process:
         wait_for(lambda: not _open_jobs(), what="the twelve jobs", seconds=20)
         assert _get(port, "/healthz")[0] == 200
@@ -79,9 +80,9 @@ def test_what_fell_due_while_it_was_off_is_done_at_its_start_once_and_at_its_tru
 def test_a_second_copy_is_refused_and_the_first_goes_on(
     committing_db: CommittingDatabase, commons_id: int, tmp_path: Path
 ) -> None:
-    port = _free_port()
+    port = free_port()
     with _serving(committing_db, tmp_path, port=port) as first:
-        second = ("manage.py", "serve", "--port", str(_free_port()))
+        second = ("manage.py", "serve", "--port", str(free_port()))
         with running(*second, STINTBOOK_DATABASE=committing_db.address) as process:
             said, _ = process.communicate(timeout=WAIT_SECONDS)
             assert process.returncode == 1
@@ -112,7 +113,7 @@ def test_told_to_stop_it_finishes_the_job_and_the_request_in_hand_and_begins_no_
     committing_db: CommittingDatabase, commons_id: int, tmp_path: Path
 ) -> None:
     promise(commons_id=commons_id, kind="slow", key="in hand")
-    port = _free_port()
+    port = free_port()
     answers: list[tuple[int, bytes]] = []
     with _serving(committing_db, tmp_path, port=port) as process:
         wait_for((tmp_path / "begun-in hand").exists, what="the job to begin")
@@ -135,7 +136,7 @@ def test_killed_in_the_middle_of_a_job_it_does_it_once_after_its_next_start(
     committing_db: CommittingDatabase, commons_id: int, tmp_path: Path
 ) -> None:
     promise(commons_id=commons_id, kind="slow", key="cut off")
-    port = _free_port()
+    port = free_port()
     with _serving(committing_db, tmp_path, port=port) as process:
         wait_for((tmp_path / "begun-cut off").exists, what="the job to begin")
         process.kill()

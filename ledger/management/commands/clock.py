@@ -31,20 +31,20 @@ class Command(BaseCommand):
             raise CommandError("The clock needs PostgreSQL and a broker; serve has its own clock.")
         ready.check_tables()
         logs.begin()
+        stop = stopping.on_signal()
         with locks.held(name="clock", key=0) as is_mine:
             if not is_mine:
                 raise CommandError("Another clock runs for this book already; this one ends.")
             self.stdout.write("The clock runs.")
             self.stdout.flush()
-            _run()
+            _run(stop)
 
 
-def _run() -> None:
+def _run(stop: threading.Event) -> None:
     """Ring until told to stop, as long as the lock is held.
 
     :raises CommandError: if the connection that holds the lock was lost, or the clock broke.
     """
-    stop = stopping.on_signal()
     clock = Service(app, max_interval=1.0, scheduler_cls=Scheduler)
     thread = threading.Thread(target=clock.start, name="stintbook-clock", daemon=True)
     thread.start()

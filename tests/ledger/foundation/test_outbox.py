@@ -119,6 +119,8 @@ def test_a_job_whose_attempts_never_end_is_parked_and_stays_visible(
     for attempt in range(1, 6):
         begun = outbox.begin(job_id=bad.id, at=ticking_clock())
         assert begun is not None and begun.attempts == attempt
+        # It comes last from its first death on.
+        assert [job.key for job in outbox.due(at=ticking_clock(), limit=9)] == ["good", "bad"]
     assert outbox.begin(job_id=bad.id, at=ticking_clock()) is None
     assert [job.key for job in outbox.due(at=ticking_clock(), limit=9)] == ["good"]
     (parked,) = outbox.parked(commons_id=1)

@@ -26,8 +26,8 @@ from ledger.foundation.hands import Hand  # noqa: E402
 from ledger.foundation.outbox import DueJob  # noqa: E402
 from ledger.management import serving  # noqa: E402
 from ledger.tasks import handlers  # noqa: E402
+from tests.ledger.processes import FOLDER  # noqa: E402
 
-FOLDER = "STINTBOOK_TEST_FOLDER"
 PATIENCE_SECONDS = 30.0
 
 

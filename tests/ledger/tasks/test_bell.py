@@ -1,10 +1,8 @@
 """The bell on a real Redis, with a real worker, in processes that the test starts."""
 
 import os
-import socket
 import subprocess
 import sys
-import time
 from collections.abc import Iterator
 from datetime import UTC, date, datetime
 from pathlib import Path
@@ -20,53 +18,26 @@ from ledger.foundation.clocks import Chance, system_clock
 from ledger.foundation.models import Job
 from tests.conftest import CommittingDatabase, TickingClock
 from tests.ledger import builders
+from tests.ledger.processes import (
+    REDIS_SERVER,
+    ROOT,
+    WAIT_SECONDS,
+    free_port,
+    redis_on,
+    wait_for,
+)
 
-REDIS_SERVER = "STINTBOOK_TEST_REDIS_SERVER"
-WAIT_SECONDS = 40
 # A season that has no work due on the day of the test but what the test promises.
 FAR_OFF = DateRange(first=date(2199, 3, 1), until=date(2199, 6, 29))
-ROOT = Path(__file__).resolve().parents[3]
 
 pytestmark = pytest.mark.needs_server(REDIS_SERVER)
 
 
-def _waits_for(met: object, *, what: str) -> None:
-    until = time.monotonic() + WAIT_SECONDS
-    while time.monotonic() < until:
-        if met():  # type: ignore[operator]
-            return
-        time.sleep(0.1)
-    pytest.fail(f"waited {WAIT_SECONDS} seconds for {what}")
-
-
 @pytest.fixture
 def broker(tmp_path: Path) -> Iterator[redis.Redis]:
-    """Start a Redis of this test's own on a free port; it keeps nothing on disk."""
-    with socket.socket() as free:
-        free.bind(("127.0.0.1", 0))
-        port = free.getsockname()[1]
-    server = subprocess.Popen(
-        [
-            *(os.environ[REDIS_SERVER], "--port", str(port), "--bind", "127.0.0.1"),
-            *("--save", "", "--appendonly", "no", "--dir", str(tmp_path)),
-        ],
-        stdout=subprocess.DEVNULL,
-    )
-    client = redis.Redis(port=port)
-    try:
-        _waits_for(lambda: _answers(client), what="Redis to answer")
+    """Start a Redis of this test's own on a free port."""
+    with redis_on(free_port(), folder=tmp_path) as client:
         yield client
-    finally:
-        client.close()
-        server.terminate()
-        server.wait(timeout=WAIT_SECONDS)
-
-
-def _answers(client: redis.Redis) -> bool:
-    try:
-        return bool(client.ping())
-    except redis.ConnectionError:
-        return False
 
 
 def _url(broker: redis.Redis) -> str:
@@ -87,7 +58,7 @@ def worker(broker: redis.Redis, committing_db: CommittingDatabase) -> Iterator[C
     )
     client = Celery(broker=_url(broker))
     try:
-        _waits_for(lambda: client.control.ping(timeout=0.5), what="the worker to answer")
+        wait_for(lambda: client.control.ping(timeout=0.5), what="the worker to answer")
         yield client
     finally:
         client.close()
@@ -125,12 +96,12 @@ def test_a_ring_does_what_is_due_and_a_lost_bell_loses_nothing(
     builders.adopt_allowables(commons_id=commons_id, hand=hand, year=FAR_OFF.first.year)
     _promise(commons_id, "first")
     worker.send_task("stintbook.ring")
-    _waits_for(lambda: _is_done(commons_id, "first"), what="the first job to be done")
+    wait_for(lambda: _is_done(commons_id, "first"), what="the first job to be done")
 
     _promise(commons_id, "second")
     broker.flushall()
     worker.send_task("stintbook.ring")
-    _waits_for(lambda: _is_done(commons_id, "second"), what="the second job to be done")
+    wait_for(lambda: _is_done(commons_id, "second"), what="the second job to be done")
 
     second = Job.objects.get(commons_id=commons_id, key="second")
     assert second.outcome.startswith("no longer due")

@@ -8,7 +8,7 @@ import pytest
 from django.db import connection, transaction
 
 from ledger.commons import operations as commons
-from ledger.foundation import outbox
+from ledger.foundation import locks, outbox
 from ledger.foundation.clocks import Chance, seeded_chance
 from ledger.foundation.hands import Hand
 from ledger.foundation.models import Job
@@ -218,6 +218,69 @@ class TestFailed:
         assert (done.outcome, done.failed) == ("done by another", False)
         promised.refresh_from_db()
         assert (promised.outcome, promised.attempts) == ("elsewhere", 1)
+
+
+class TestParked:
+    def test_what_brought_one_worker_after_the_other_down_lets_the_others_go_on(
+        self, commons_id: int, does: Does, ticking_clock: TickingClock, chance: Chance
+    ) -> None:
+        """A process that ends leaves no exception behind: only its counted beginnings."""
+        does(writes)
+        bad = promise(commons_id, ticking_clock, key="bad", at=NOON - HOUR)
+        promise(commons_id, ticking_clock, key="good")
+        for _ in range(5):
+            with transaction.atomic():
+                outbox.begin(job_id=bad.pk, at=NOON)
+        assert [each.job.key for each in drained(ticking_clock, chance)] == ["good"]
+        (parked,) = outbox.parked(commons_id=commons_id)
+        assert (parked.job.key, parked.job.attempts) == ("bad", 5)
+        assert written(commons_id) == ["good"]
+
+    def test_a_job_that_somebody_has_in_hand_is_left_to_them(
+        self, committing_db: CommittingDatabase, does: Does, ticking_clock: TickingClock
+    ) -> None:
+        """Work of long duration is not begun anew, nor counted, beside the one who does it."""
+        made = builders.people(hand=builders.hand(clock=ticking_clock, chance=seeded_chance(1)))
+        ticking_clock.set(NOON)
+        does(writes)
+        in_hand = promise(made, ticking_clock, key="in hand", at=NOON - HOUR)
+        promise(made, ticking_clock, key="free")
+        found: list[str] = []
+
+        def another() -> None:
+            try:
+                drain = draining.drain(clock=ticking_clock, chance=seeded_chance(2))
+                found.extend(each.job.key for each in drain)
+            finally:
+                connection.close()
+
+        with locks.held(name="job", key=in_hand.pk):
+            thread = threading.Thread(target=another)
+            thread.start()
+            thread.join()
+        assert found == ["free"]
+        in_hand.refresh_from_db()
+        assert in_hand.attempts == 0
+
+
+def test_a_clock_that_is_set_back_doubles_nothing_and_no_entry_runs_back(
+    commons_id: int, does: Does, ticking_clock: TickingClock, chance: Chance
+) -> None:
+    does(writes)
+    promise(commons_id, ticking_clock, key="before")
+    drained(ticking_clock, chance)
+    ticking_clock.set(NOON - HOUR)
+    promise(commons_id, ticking_clock, key="before")
+    promise(commons_id, ticking_clock, key="not yet")
+    promise(commons_id, ticking_clock, key="meanwhile", at=NOON - HOUR)
+    assert [each.job.key for each in drained(ticking_clock, chance)] == ["meanwhile"]
+    ticking_clock.set(NOON)
+    assert [each.job.key for each in drained(ticking_clock, chance)] == ["not yet"]
+    assert written(commons_id) == ["before", "meanwhile", "not yet"]
+    entries = journal.entries(commons_id=commons_id, kinds=("test",))
+    times = [each.recorded_at for each in entries]
+    assert times == sorted(times)
+    assert times[0] == NOON
 
 
 def test_two_workers_at_once_do_a_job_once(
