@@ -23,6 +23,13 @@ class JobNotOpen(LedgerError):
     message: ClassVar[str] = "Job {job_id} is done already or does not exist."
 
 
+class JobNotParked(LedgerError):
+    """A job that nobody parked was to ring again."""
+
+    code: ClassVar[str] = "foundation.job_not_parked"
+    message: ClassVar[str] = "Job {job_id} is not parked; accepted is a job that jobs lists."
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class DueJob:
     """One job that has rung: where it belongs, what is to be done, how often it was tried."""
@@ -133,6 +140,18 @@ def begin(*, job_id: int, at: datetime) -> DueJob | None:
     job.unended += 1
     job.save(update_fields=["attempts", "unended"])
     return _due_job(job)
+
+
+@transactions.required
+def try_again(*, job_id: int) -> None:
+    """Let a parked job ring again, with its count of lost workers begun anew.
+
+    :raises JobNotParked: if it is not parked, or does not exist.
+    """
+    parked_job = Job.objects.filter(pk=job_id, done_at__isnull=True, parked_at__isnull=False)
+    if not parked_job.update(parked_at=None, unended=0):
+        raise JobNotParked(job_id=job_id)
+    ringing.after_commit()
 
 
 @transactions.required
