@@ -205,6 +205,7 @@ def addresses(entry: int) -> list[str]:
         f"{under}/entries/{entry}/receipt/",
         f"{under}/entries/{entry}/correct/",
         f"{under}/members/",
+        f"{under}/devices/",
         "/nothing/",
     ]
 
@@ -213,6 +214,16 @@ def addresses(entry: int) -> list[str]:
 def test_every_page_serves_everybody(open_as: OpenAs, book: int, width: int) -> None:
     page = open_as(4, viewport={"width": width, "height": 800})
     for address in addresses(size(book)):
+        page.goto(address)
+        assert page.url.endswith(address)
+        assert amiss(page) == []
+        assert not sideways(page), address
+        assert small_targets(page) == []
+
+
+def test_the_doors_serve_every_stranger(open_as: OpenAs) -> None:
+    page = open_as(None, viewport={"width": 320, "height": 800})
+    for address in ("/", "/sign-in/", "/card/"):
         page.goto(address)
         assert page.url.endswith(address)
         assert amiss(page) == []
