@@ -21,7 +21,7 @@ from ledger.identity import operations as identity
 from ledger.identity import queries as accounts
 from ledger.journal import queries as journal
 from ledger.judgement import queries as judgement
-from ledger.reports import collecting, figures
+from ledger.reports import collecting, figures, standing
 from ledger.seasons import queries as seasons
 from ledger.web.visitors import AUDITOR, BOARD, MONITOR, SECRETARY, NotHere
 
@@ -123,6 +123,22 @@ class Members(CommonsView):
                 ]
             }
         )
+
+
+class MemberStanding(CommonsView):
+    """Where a member stands."""
+
+    @extend_schema(
+        operation_id="read_standing",
+        parameters=[shapes.NUMBER],
+        responses={200: shapes.StandingOut},
+    )
+    def get(self, request: Request, slug: str, number: int) -> Response:
+        """Read what a member may still take and owes, what is open, and why."""
+        if not self.visitor.sees_member(number):
+            raise NotHere(what="member")
+        found = standing.standing(commons_id=self.commons_id, member=number, now=system_clock())
+        return Response(shapes.standing(found))
 
 
 class Findings(CommonsView):

@@ -25,6 +25,7 @@ STATUS_OF: Mapping[str, int] = {
             "journal.entry_not_found",
             "judgement.unknown_finding",
             "movements.unknown_slip",
+            "reports.no_such_member",
             "reports.no_such_season",
             "seasons.unknown_season",
             "web.not_here",

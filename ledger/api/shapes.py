@@ -8,6 +8,7 @@ from ledger.api import answers, fields
 from ledger.api.answers import Facts, Hash, HeadOut, Shape, Units, bounded, count, many
 from ledger.identity.queries import TokenRecord
 from ledger.judgement.queries import FindingRecord
+from ledger.reports.standing import Standing
 
 LIST_MAX = 1_000_000
 NUMBER = answers.ENTRY_NUMBER
@@ -89,6 +90,74 @@ class FindingOut(Shape):
     entries = many(count(), LIST_MAX)
     working = many(bounded(10_000), 1000)
     reasons = serializers.ListField(child=bounded(10_000), required=False, max_length=1000)
+
+
+class SeasonStandingOut(Shape):
+    """A member's part of a season, in base units; ``sentence`` says it in words."""
+
+    season = bounded(40)
+    resource = bounded(40)
+    unit = bounded(20)
+    first = serializers.DateField()
+    last = serializers.DateField()
+    current = serializers.BooleanField()
+    allotted = Units()
+    taken = Units()
+    left = Units()
+    sentence = bounded(1000)
+
+
+class DutyOut(Shape):
+    """Work that a clause asks of a member for a season, in minutes."""
+
+    clause = bounded(80)
+    title = bounded(1000)
+    owed = Units()
+    worked = Units()
+    bought = Units()
+
+
+class DueOut(Shape):
+    """Money that a member was charged with, in the smallest coin."""
+
+    kind = bounded(40)
+    owed = Units()
+    paid = Units()
+
+
+class ReasonOut(Shape):
+    """A finding about a member's household, opened in words, and the open case on it."""
+
+    finding = count()
+    clause = bounded(80)
+    entries = many(count(), LIST_MAX)
+    lines = many(bounded(10_000), 1000)
+    case = count(allow_null=True)
+    state = bounded(40)
+
+
+class OrderOut(Shape):
+    """An outside order in force: it stands above every clause."""
+
+    entry = count()
+    authority = bounded(200)
+    resource = bounded(40)
+    zones = many(bounded(40), 10_000)
+    first = serializers.DateField()
+    notice = bounded(1_000_000)
+
+
+class StandingOut(Shape):
+    """Where a member stands, and why."""
+
+    member = count()
+    as_of = serializers.DateField()
+    orders = many(OrderOut(), 10_000)
+    suspended_until = serializers.DateField(allow_null=True)
+    seasons = many(SeasonStandingOut(), 10_000)
+    duties = many(DutyOut(), 1000)
+    dues = many(DueOut(), 100)
+    reasons = many(ReasonOut(), LIST_MAX)
 
 
 class FindingsOut(Shape):
@@ -207,6 +276,66 @@ def finding(record: FindingRecord) -> dict[str, Any]:
         "overuse": str(found.overuse),
         "entries": list(found.entries),
         "working": list(found.working),
+    }
+
+
+def standing(record: Standing) -> dict[str, Any]:
+    """Return a standing as it is answered; whole amounts are texts."""
+    until = record.suspended_until
+    return {
+        "member": record.member.number,
+        "as_of": record.as_of.isoformat(),
+        "orders": [
+            {
+                "entry": order.entry,
+                "authority": order.authority,
+                "resource": order.resource,
+                "zones": list(order.zones),
+                "first": order.first.isoformat(),
+                "notice": order.notice,
+            }
+            for order in record.orders
+        ],
+        "suspended_until": None if until is None else until.isoformat(),
+        "seasons": [
+            {
+                "season": each.season,
+                "resource": each.resource,
+                "unit": each.base,
+                "first": each.first.isoformat(),
+                "last": each.last.isoformat(),
+                "current": each.current,
+                "allotted": str(each.allotted),
+                "taken": str(each.taken),
+                "left": str(each.left),
+                "sentence": each.sentence,
+            }
+            for each in record.seasons
+        ],
+        "duties": [
+            {
+                "clause": duty.clause,
+                "title": duty.title,
+                "owed": str(duty.owed),
+                "worked": str(duty.worked),
+                "bought": str(duty.bought),
+            }
+            for duty in record.duties
+        ],
+        "dues": [
+            {"kind": due.kind, "owed": str(due.owed), "paid": str(due.paid)} for due in record.dues
+        ],
+        "reasons": [
+            {
+                "finding": reason.finding,
+                "clause": reason.clause,
+                "entries": list(reason.entries),
+                "lines": list(reason.lines),
+                "case": reason.case,
+                "state": reason.state,
+            }
+            for reason in record.reasons
+        ],
     }
 
 

@@ -20,6 +20,7 @@ COMMONS = [
     path("entries/<number:number>/receipt", entries.EntryReceipt.as_view()),
     path("entries/<number:number>/reversal", entries.Reversal.as_view()),
     path("members", book.Members.as_view()),
+    path("members/<number:number>/standing", book.MemberStanding.as_view()),
     path("findings", book.Findings.as_view()),
     path("findings/<number:number>", book.OneFinding.as_view()),
     path("cases", cases.Cases.as_view()),

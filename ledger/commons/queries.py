@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from datetime import date, datetime
+from datetime import date, datetime, timedelta
 from typing import ClassVar, TypeVar
 
 from django.db.models import QuerySet
@@ -169,15 +169,28 @@ def zones(*, commons_id: int) -> Mapping[str, ZoneRecord]:
     }
 
 
+def _member(row: models.Member) -> MemberRecord:
+    return MemberRecord(
+        number=row.number, name=row.name, household=row.household, draw_point=row.draw_point
+    )
+
+
 def members(*, commons_id: int) -> Mapping[int, MemberRecord]:
     """Return the members of a commons by number."""
     rows = models.Member.objects.filter(commons_id=commons_id).order_by("number")
-    return {
-        row.number: MemberRecord(
-            number=row.number, name=row.name, household=row.household, draw_point=row.draw_point
-        )
-        for row in rows
-    }
+    return {row.number: _member(row) for row in rows}
+
+
+def member(*, commons_id: int, number: int) -> MemberRecord | None:
+    """Return one member, if the number is a member's."""
+    row = models.Member.objects.filter(commons_id=commons_id, number=number).first()
+    return None if row is None else _member(row)
+
+
+def members_from(*, commons_id: int, number: int, limit: int) -> tuple[MemberRecord, ...]:
+    """Return up to so many members from a number on, in order of number."""
+    rows = models.Member.objects.filter(commons_id=commons_id, number__gte=number)
+    return tuple(_member(row) for row in rows.order_by("number")[:limit])
 
 
 def is_member(*, commons_id: int, number: int) -> bool:
@@ -214,6 +227,22 @@ def roster(*, commons_id: int, up_to: int | None = None) -> Roster:
             if row.entry_number in standing
         ],
     )
+
+
+def suspended_until(*, commons_id: int, member: int, day: date) -> date | None:
+    """Return the last day of the suspension that a member is under on a day, if there is one.
+
+    One whose entry was reversed holds nobody.
+    """
+    rows = models.Suspension.objects.filter(
+        commons_id=commons_id, member=member, first_day__lte=day, until_day__gt=day
+    )
+    standing = [
+        row.until_day - timedelta(days=1)
+        for row in rows
+        if journal.entry(commons_id=commons_id, number=row.entry_number).reversed_by is None
+    ]
+    return max(standing, default=None)
 
 
 def orders(*, commons_id: int, up_to: int | None = None) -> tuple[Order, ...]:

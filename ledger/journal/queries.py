@@ -295,6 +295,38 @@ def balances(
     }
 
 
+def total(*, commons_id: int, prefix: str, resource: str, unit: str) -> int:
+    """Return the sum over the accounts that begin so, added up by the database."""
+    found = models.Balance.objects.filter(
+        commons_id=commons_id,
+        account__gte=prefix,
+        account__lt=_after(prefix),
+        resource=resource,
+        unit=unit,
+    )
+    return int(found.aggregate(total=Sum("amount"))["total"] or 0)
+
+
+def totals_by_day(
+    *, commons_id: int, prefix: str, resource: str, unit: str
+) -> tuple[tuple[date, int], ...]:
+    """Return what the accounts that begin so gained on each day, added up by the database."""
+    found = models.Posting.objects.filter(
+        commons_id=commons_id,
+        account__gte=prefix,
+        account__lt=_after(prefix),
+        resource=resource,
+        unit=unit,
+    )
+    by_day = found.order_by("day").values_list("day").annotate(total=Sum("amount"))
+    return tuple((day, int(total)) for day, total in by_day if total)
+
+
+def _after(prefix: str) -> str:
+    """Return the first text that comes after all that begin with a prefix, sign by sign."""
+    return prefix[:-1] + chr(ord(prefix[-1]) + 1)
+
+
 def balance_as_of(
     *,
     commons_id: int,

@@ -72,7 +72,8 @@ def record_withdrawals(
     """Record slips in order, one entry each; what breaks a bylaw is recorded all the same.
 
     The same key of a device twice adds nothing and returns the first receipt, and so does the same
-    slip number twice at the desk. All are recorded or none: what :func:`ledger.movements.writing.withdrawal` refuses in one slip is raised for all.
+    slip number twice at the desk. All are recorded or none: what
+    :func:`ledger.movements.writing.withdrawal` refuses in one slip is raised for all.
 
     :raises ledger.journal.operations.KeyReused: if a slip number stands for another content.
     """

@@ -72,5 +72,5 @@ def _secretaries(visitor: Visitor) -> list[str]:
     commons_id = visitor.commons.commons_id
     today = visitor.commons.day_of(system_clock())
     held = commons.holders_of(commons_id=commons_id, role=visitors.SECRETARY, day=today)
-    members = commons.members(commons_id=commons_id)
-    return [members[number].name for number in sorted(held)]
+    found = (commons.member(commons_id=commons_id, number=number) for number in sorted(held))
+    return [each.name for each in found if each is not None]

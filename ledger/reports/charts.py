@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any, ClassVar
 from governance.advice.records import StockHistory, YearBand
 from ledger.foundation.errors import LedgerError
 from ledger.reports import canvas, numbers
-from ledger.reports.figures import ResourceFigures
+from ledger.reports.measured import Drawn, Measured
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -32,7 +32,7 @@ class TooFewRuns(LedgerError):
     message: ClassVar[str] = "Bands need at least {needed} runs; there are {found}."
 
 
-def take_svg(*, resource: ResourceFigures, proof: str, description: str) -> str:
+def take_svg(*, resource: Drawn, proof: str, description: str) -> str:
     """Draw the cumulative take under the allowable in force, by local day, in reading units.
 
     :param description: the sentence that says what the chart shows.
@@ -93,7 +93,7 @@ def stock_svg(
         return canvas.svg(figure, title=title, description=description)
 
 
-def _cumulative(resource: ResourceFigures) -> tuple[list[int], list[float]]:
+def _cumulative(resource: Drawn) -> tuple[list[int], list[float]]:
     """Return day ordinals and the sum taken so far, from zero on the first day to the last."""
     days = [row.day for row in resource.daily]
     sums = list(accumulate(row.amount for row in resource.daily))
@@ -105,7 +105,7 @@ def _cumulative(resource: ResourceFigures) -> tuple[list[int], list[float]]:
     return [day.toordinal() for day in x], [_read(resource, value) for value in y]
 
 
-def _allowable(resource: ResourceFigures) -> tuple[list[int], list[float]]:
+def _allowable(resource: Drawn) -> tuple[list[int], list[float]]:
     steps = resource.allowable_steps
     if not steps:
         return [], []
@@ -114,7 +114,7 @@ def _allowable(resource: ResourceFigures) -> tuple[list[int], list[float]]:
     return [*x, resource.closes.toordinal() + 1], [*y, y[-1]]
 
 
-def _read(resource: ResourceFigures, amount: int) -> float:
+def _read(resource: Measured, amount: int) -> float:
     return float(numbers.reading(amount, base=resource.base, unit=resource.unit))
 
 

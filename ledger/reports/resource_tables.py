@@ -6,6 +6,7 @@ import math
 from governance.advice.records import Advice, EstimateRow, RiskRow, StockHistory, SurveyRisk
 from ledger.reports import advice_words, numbers, outline
 from ledger.reports.figures import ResourceFigures, SeasonFigures
+from ledger.reports.measured import Measured
 from ledger.reports.outline import Cell, Sheet, Table
 
 # Chances from which a cell is a shade darker; the first is where people count 1 in 20.
@@ -16,7 +17,7 @@ _FRAMED = (
 )
 
 
-def proposal(advice: Advice, *, resource: ResourceFigures) -> Table:
+def proposal(advice: Advice, *, resource: Measured) -> Table:
     """Return the step from the present allowable to the proposed one."""
     steps = (
         ("Allowable of this season", advice.present),
@@ -62,7 +63,7 @@ def _estimate(figures: SeasonFigures, row: EstimateRow) -> tuple[Cell, ...]:
     )
 
 
-def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
+def risk(advice: Advice, *, resource: Measured) -> Table:
     """Return the candidates in the order of their size; a frame marks a broken threshold."""
     if advice.survey_risk is not None:
         return _survey_risk(advice.survey_risk, resource=resource)
@@ -98,7 +99,7 @@ def risk(advice: Advice, *, resource: ResourceFigures) -> Table:
     )
 
 
-def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
+def _survey_risk(table: SurveyRisk, *, resource: Measured) -> Table:
     unit = numbers.unit_word(resource.unit)
     found = numbers.amount_with_unit(table.found, base=resource.base, unit=resource.unit)
     return Table(
@@ -134,7 +135,7 @@ def _survey_risk(table: SurveyRisk, *, resource: ResourceFigures) -> Table:
     )
 
 
-def _risk(row: RiskRow, *, resource: ResourceFigures) -> tuple[Cell, ...]:
+def _risk(row: RiskRow, *, resource: Measured) -> tuple[Cell, ...]:
     mean_take, end = (
         outline.rough_amount(value, base=resource.base, unit=resource.unit)
         for value in (row.mean_take, row.end_median)
@@ -163,7 +164,7 @@ def _cell(probability: float, *, words: str, framed: bool = False) -> Cell:
     )
 
 
-def _risk_note(advice: Advice, *, resource: ResourceFigures) -> str:
+def _risk_note(advice: Advice, *, resource: Measured) -> str:
     table = advice.risk
     assert table is not None
     limit = numbers.rough_amount(table.limit, base=resource.base, unit=resource.unit)

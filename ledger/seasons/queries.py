@@ -67,6 +67,11 @@ def left_account(*, season: str, member: int) -> str:
     return f"left:{season}:{member}"
 
 
+def taken_prefix(*, season: str) -> str:
+    """Name how the accounts of what was taken in a season begin."""
+    return f"taken:{season}:"
+
+
 def taken_account(*, season: str, member: int) -> str:
     """Name the account of what a member has taken."""
     return f"taken:{season}:{member}"

@@ -88,10 +88,10 @@ class Visitor:
 
     def household(self) -> frozenset[int]:
         """Return the members of the visitor's household, the visitor among them."""
-        members = commons.members(commons_id=self.commons.commons_id)
-        return commons.household_of(
-            commons_id=self.commons.commons_id, household=members[self.member].household
-        )
+        commons_id = self.commons.commons_id
+        own = commons.member(commons_id=commons_id, number=self.member)
+        assert own is not None, "a seat is a member's"
+        return commons.household_of(commons_id=commons_id, household=own.household)
 
     def records_takes_of(self, member: int) -> bool:
         """Return whether the visitor may record a withdrawal of a member."""
