@@ -150,7 +150,7 @@ class CaseMoves(CasesView):
     def _act(self, asked: dict[str, Any], case: cases.CaseRecord) -> operations.Act:
         role = asked["role"]
         member = asked.get("member")
-        if member is None and role != "assembly":
+        if member is None and role not in ("assembly", "book"):
             member = self.visitor.member
         visitors.may_move_case(
             self.visitor,

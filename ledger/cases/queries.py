@@ -9,8 +9,8 @@ from typing import ClassVar, assert_never
 
 from governance.bylaws import clauses
 from governance.compliance.findings import SubjectKind
-from governance.sanctions import ladder, record
-from governance.sanctions.moves import Move, State
+from governance.sanctions import clocks, ladder, record
+from governance.sanctions.moves import TABLE, Move, Need, Role, State
 from ledger.bylaws import queries as bylaws
 from ledger.cases import columns, models
 from ledger.commons import queries as commons
@@ -196,6 +196,71 @@ def measure(*, commons_id: int, case: CaseRecord) -> str | None:
             return "referral"
         case other:
             assert_never(other)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OpenMove:
+    """A move that may follow in a case: who makes it, and what it must carry, in words of the book.
+
+    ``carries`` holds some of ``reason``, ``officer`` and ``delivery``.
+    """
+
+    move: str
+    roles: tuple[str, ...]
+    carries: frozenset[str]
+
+
+_CARRIED = {
+    Need.REASON: "reason",
+    Need.OFFICER: "officer",
+    Need.DELIVERY: "delivery",
+}
+
+
+def open_moves(*, case: CaseRecord) -> tuple[OpenMove, ...]:
+    """Return the moves that may follow the state of a case, other than those the book makes alone.
+
+    Whether one is accepted depends on days and persons too; the procedure says so when it is tried.
+    """
+    return tuple(
+        OpenMove(
+            move=str(row.move),
+            roles=tuple(str(role) for role in row.roles),
+            carries=frozenset(_CARRIED[need] for need in row.needs if need in _CARRIED),
+        )
+        for row in TABLE
+        if case.so_far.state in row.sources
+        and (Need.DELIVERY in row.needs or Role.BOOK not in row.roles)
+    )
+
+
+def last_days(*, commons_id: int, case: CaseRecord) -> tuple[date | None, date | None]:
+    """Return until when the member may answer and appeal; None where the days do not run."""
+    book = book_of(commons_id=commons_id, case=case)
+    procedure = next((each for each in book.clauses if isinstance(each, clauses.Procedure)), None)
+    if procedure is None:
+        return None, None
+    return (
+        clocks.answer_until(case=case.so_far, procedure=procedure),
+        clocks.appeal_until(case=case.so_far, procedure=procedure),
+    )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ClauseText:
+    """A clause as a member reads it, and the edition that it was judged under."""
+
+    id: str
+    title: str
+    text: str
+    edition: int
+
+
+def clause_text(*, commons_id: int, case: CaseRecord) -> ClauseText:
+    """Return the clause that a case is about, as the edition said that was in force at the act."""
+    book = book_of(commons_id=commons_id, case=case)
+    head = book.clause(case.finding.finding.key.clause).head
+    return ClauseText(id=head.id, title=head.title, text=head.text, edition=book.edition)
 
 
 def days_between(case: CaseRecord) -> tuple[int | None, int | None]:

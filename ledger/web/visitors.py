@@ -162,7 +162,7 @@ def may_move_case(
 
     Whoever holds an office acts in it themself; so nobody decides in another's name.
 
-    :param member: the member who acts, or None for the assembly.
+    :param member: the member who acts, or None for the assembly and for the book.
     :param concerned: the members whom the case concerns.
     :raises NotYours: if not.
     """
@@ -172,6 +172,9 @@ def may_move_case(
         allowed = own or written_down
     elif role == "assembly":
         allowed = visitor.holds(SECRETARY)
+    elif role == "book":
+        # That the reasons were handed over is written down by whoever handed them over.
+        allowed = move == "open_appeal" and visitor.holds(SECRETARY)
     else:
         allowed = role in OFFICES and visitor.holds(role) and member in (None, visitor.member)
     if not allowed:
