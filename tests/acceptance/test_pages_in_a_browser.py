@@ -206,6 +206,10 @@ def addresses(entry: int) -> list[str]:
         f"{under}/entries/{entry}/correct/",
         f"{under}/members/",
         f"{under}/devices/",
+        f"{under}/members/1/",
+        f"{under}/seasons/",
+        f"{under}/seasons/mullet-2026/",
+        f"{under}/cases/",
         "/nothing/",
     ]
 
