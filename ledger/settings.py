@@ -199,7 +199,7 @@ CACHES = {
 }
 
 REST_FRAMEWORK = {
-    "DEFAULT_SCHEMA_CLASS": "ledger.api.schema.ProblemSchema",
+    "DEFAULT_SCHEMA_CLASS": "ledger.api.schema.TokenSchema",
     "DEFAULT_RENDERER_CLASSES": ["rest_framework.renderers.JSONRenderer"],
     "DEFAULT_THROTTLE_CLASSES": ["rest_framework.throttling.UserRateThrottle"],
     "DEFAULT_THROTTLE_RATES": {"user": "1200/minute"},

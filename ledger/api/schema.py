@@ -1,53 +1,56 @@
-"""The OpenAPI document: beside what each address answers, every way in which it refuses."""
+"""What is added to the OpenAPI document: how each address refuses, and the bounds of its parts."""
 
 from typing import Any
 
 from drf_spectacular.openapi import AutoSchema
-from drf_spectacular.utils import OpenApiResponse
 
-from ledger.api import answers, problems
-from ledger.api.views import CommonsView
+from ledger.api import problems
 
-REFUSALS = (400, 401, 403, 404, 405, 406, 429, 503)
-WRITING = (409, 413, 415, 422)
+REFUSALS = (400, 401, 403, 404, 405, 406, 409, 429, 503)
+WRITING = (413, 415, 422)
 EDITING = (412, 428)
+_METHODS = ("get", "post", "patch", "delete")
+_NAME = {"maxLength": 60, "pattern": "^[-a-zA-Z0-9_]+$"}
 
 
-class ProblemSchema(AutoSchema):
-    """Documents the problem answers of every operation, and the token it needs."""
+class TokenSchema(AutoSchema):
+    """Leaves it to :func:`close` to tell of the token, which is the same at every address."""
 
-    def get_response_serializers(self) -> Any:
-        """Return what an operation answers, with its refusals."""
-        found: Any = super().get_response_serializers()
-        if not isinstance(self.view, CommonsView):
-            return found
-        codes = list(REFUSALS)
-        if self.method in ("POST", "PATCH", "DELETE"):
-            codes += WRITING
-        if self.method == "PATCH" or any(
-            each["name"] == "If-Match" for each in self._get_parameters()
-        ):
-            codes += EDITING
-        if self.method == "GET":
-            codes.append(409)
-        refusals = {
-            (code, problems.MEDIA_TYPE): OpenApiResponse(
-                answers.ProblemOut, description="Refused; the document says why."
-            )
-            for code in codes
-        }
-        return dict(found) | refusals
-
-    def get_auth(self) -> Any:
-        """Return how an operation is opened."""
-        return [{"token": []}] if isinstance(self.view, CommonsView) else []
+    def get_auth(self) -> list[dict[str, Any]]:
+        """Return nothing."""
+        return []
 
 
 def close(result: dict[str, Any], **kwargs: Any) -> dict[str, Any]:
-    """Finish the document: no object takes a field that is not named, and the token is told of."""
+    """Finish the document: tell of refusals and of the token, and leave nothing without bounds."""
     components = result.setdefault("components", {})
     for shape in components.get("schemas", {}).values():
         if shape.get("type") == "object":
             shape.setdefault("additionalProperties", False)
     components["securitySchemes"] = {"token": {"type": "http", "scheme": "bearer"}}
+    for path, methods in result["paths"].items():
+        if "/commons/" in path:
+            for method in _METHODS:
+                if method in methods:
+                    _tell(methods[method], method)
     return result
+
+
+def _tell(operation: dict[str, Any], method: str) -> None:
+    parameters = operation.get("parameters", [])
+    for parameter in parameters:
+        if parameter["in"] == "path" and parameter["name"] in ("slug", "season"):
+            parameter["schema"] |= _NAME
+    codes = REFUSALS + (WRITING if method == "post" else ())
+    if any(parameter["name"] == "If-Match" for parameter in parameters):
+        codes += EDITING
+    operation["security"] = [{"token": []}]
+    operation["responses"] |= {
+        str(code): {
+            "description": "Refused; the document says why.",
+            "content": {
+                problems.MEDIA_TYPE: {"schema": {"$ref": "#/components/schemas/ProblemOut"}}
+            },
+        }
+        for code in codes
+    }

@@ -2,7 +2,7 @@
 
 import json
 from dataclasses import dataclass
-from datetime import UTC, datetime
+from datetime import UTC, date, datetime
 from typing import Any
 
 from django.db import transaction
@@ -17,6 +17,7 @@ from tests.conftest import TickingClock
 from tests.ledger import builders, scene
 
 AUDITOR, MEMBER, HOUSEMATE, OTHER = 8, 5, 6, 7
+DAY = date(2026, 3, 2)
 WHO = {
     "secretary": builders.SECRETARY,
     "monitor": builders.MONITOR,
