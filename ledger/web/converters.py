@@ -2,8 +2,8 @@
 
 from datetime import date
 
-# What the whole numbers of JSON carry without loss everywhere.
-_DIGITS_MAX = 15
+# As many as the whole numbers have that JSON carries without loss everywhere, below 2^53.
+_DIGITS_MAX = 16
 
 
 class NumberConverter:
