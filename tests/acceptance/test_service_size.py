@@ -40,7 +40,7 @@ from tests.ledger import builders
 
 REDIS_SERVER = "STINTBOOK_TEST_REDIS_SERVER"
 ROOT = Path(__file__).resolve().parents[2]
-WAIT_SECONDS = 60
+WAIT_SECONDS = 180
 SLUG, FISHER = "reed-bank", 5
 
 

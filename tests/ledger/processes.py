@@ -20,7 +20,7 @@ from ledger.foundation.clocks import system_clock
 from ledger.journal import queries as journal
 
 ROOT = Path(__file__).resolve().parents[2]
-WAIT_SECONDS = 40.0
+WAIT_SECONDS = 120.0
 REDIS_SERVER = "STINTBOOK_TEST_REDIS_SERVER"
 # Where odd jobs say that they have begun, and look whether they may go on.
 FOLDER = "STINTBOOK_TEST_FOLDER"
