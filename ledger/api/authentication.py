@@ -2,11 +2,13 @@
 
 from typing import Any
 
+from django.db import transaction
 from rest_framework.authentication import BaseAuthentication, get_authorization_header
 from rest_framework.exceptions import AuthenticationFailed
 from rest_framework.request import Request
 
 from ledger.foundation.clocks import system_clock
+from ledger.identity import operations
 from ledger.identity import queries as identity
 from ledger.identity.queries import TokenRecord
 
@@ -37,9 +39,13 @@ class TokenAuthentication(BaseAuthentication):
         if len(parts) != 2 or parts[0].lower() != b"bearer" or len(parts[1]) > TOKEN_SIGNS_MAX:
             raise AuthenticationFailed("Found another header; accepted is: Bearer TOKEN.")
         secret = parts[1].decode("ascii", errors="replace")
-        token = identity.token(secret=secret, at=system_clock())
+        now = system_clock()
+        token = identity.token(secret=secret, at=now)
         if token is None:
             raise AuthenticationFailed("This token does not hold, or holds no more.")
+        if token.last_used_on != now.date():
+            with transaction.atomic():
+                operations.note_use(token_id=token.token_id, day=now.date())
         return Caller(token), token
 
     def authenticate_header(self, request: Request) -> str:

@@ -213,6 +213,7 @@ class TokenOut(Shape):
     scopes = many(bounded(20), 10)
     made_at = fields.Instant()
     expires_at = fields.Instant()
+    last_used_on = serializers.DateField(allow_null=True)
 
 
 class TokensOut(Shape):
@@ -347,4 +348,5 @@ def token(record: TokenRecord) -> dict[str, Any]:
         "scopes": sorted(record.scopes),
         "made_at": record.made_at.isoformat(),
         "expires_at": record.expires_at.isoformat(),
+        "last_used_on": None if record.last_used_on is None else record.last_used_on.isoformat(),
     }

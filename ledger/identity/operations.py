@@ -189,4 +189,4 @@ def end_token(*, account_id: int, token_id: int, clock: Clock) -> None:
 @transactions.required
 def note_use(*, token_id: int, day: date) -> None:
     """Note the day on which a token was last used, so that one nobody needs can be ended."""
-    models.Token.objects.filter(pk=token_id).exclude(last_used_on=day).update(last_used_on=day)
+    models.Token.objects.filter(pk=token_id).update(last_used_on=day)

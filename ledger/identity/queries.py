@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from datetime import datetime
+from datetime import date, datetime
 
 from ledger.identity import models, secrets
 
@@ -29,6 +29,7 @@ class TokenRecord:
     scopes: frozenset[str]
     made_at: datetime
     expires_at: datetime
+    last_used_on: date | None
 
 
 def seats(*, account_id: int) -> Mapping[int, SeatRecord]:
@@ -93,4 +94,5 @@ def _token(row: models.Token) -> TokenRecord:
         scopes=frozenset(row.scopes),
         made_at=row.made_at,
         expires_at=row.expires_at,
+        last_used_on=row.last_used_on,
     )

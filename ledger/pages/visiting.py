@@ -58,7 +58,6 @@ def show(
     head = journal.head(commons_id=visitor.commons.commons_id)
     shown = {
         "visitor": visitor,
-        "watches": visitor.holds(*visitors.OFFICES),
         "lists_members": visitor.holds(visitors.SECRETARY, visitors.BOARD, visitors.MONITOR),
         "secretaries": _secretaries(visitor),
         "proof": journal.proof_line(head),

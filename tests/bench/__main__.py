@@ -15,6 +15,8 @@ BENCHES = (
     "posting",
     "posting_batch",
     "http",
+    "standing_page",
+    "season_page",
     "judging",
     "projection",
     "projection_bent",

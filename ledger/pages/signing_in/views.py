@@ -132,6 +132,7 @@ def _tokens(visitor: Visitor) -> list[dict[str, object]]:
             "words": [words for scope, words in SCOPE_WORDS.items() if scope in token.scopes],
             "made_at": token.made_at,
             "expires_at": token.expires_at,
+            "last_used_on": token.last_used_on,
         }
         for token in found
     ]

@@ -105,6 +105,9 @@ def test_a_token_is_ended_by_its_owner_alone(stage: Stage) -> None:
     """From the next request on it opens nothing."""
     (mine,) = stage.get("member", "tokens").json()["tokens"]
     assert mine["device"] == "phone"
+    assert stage.get("member", "tokens").json()["tokens"][0]["last_used_on"] == str(
+        system_clock().date()
+    )
     assert stage.delete("board", f"tokens/{mine['number']}").status_code == 404
     assert stage.delete("member", f"tokens/{mine['number']}").status_code == 204
     assert stage.get("member", "tokens").status_code == 401
