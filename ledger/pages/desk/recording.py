@@ -80,8 +80,8 @@ def left(request: HttpRequest, visitor: Visitor) -> HttpResponse:
     commons_id = visitor.commons.commons_id
     member, zone = request.GET.get("member", ""), request.GET.get("place", "")
     number = int(member) if member.isdecimal() and len(member) < 10 else 0
-    members = commons.members(commons_id=commons_id)
-    if number not in members or not visitor.records_takes_of(number):
+    known = commons.member(commons_id=commons_id, number=number)
+    if known is None or not visitor.records_takes_of(number):
         return JsonResponse({"name": "", "draw_point": "", "words": ""})
     words = ""
     zones = commons.zones(commons_id=commons_id)
@@ -92,7 +92,6 @@ def left(request: HttpRequest, visitor: Visitor) -> HttpResponse:
             resource=commons.resource(commons_id=commons_id, code=zones[zone].resource),
             day=visitor.commons.day_of(system_clock()),
         )
-    known = members[number]
     return JsonResponse({"name": known.name, "draw_point": known.draw_point, "words": words})
 
 
