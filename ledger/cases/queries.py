@@ -7,7 +7,7 @@ from datetime import date
 from itertools import pairwise
 from typing import ClassVar, assert_never
 
-from governance.bylaws import clauses
+from governance.bylaws import clauses, wording
 from governance.compliance.findings import SubjectKind
 from governance.sanctions import clocks, ladder, record
 from governance.sanctions.moves import TABLE, Move, Need, Role, State
@@ -29,6 +29,8 @@ _MAY_BECOME_FINAL = (
     State.APPEAL_OPEN,
     State.UNDER_APPEAL,
 )
+# In these states nothing is decided, and something may be.
+_UNDECIDED = (State.NOTED, State.CHECKING, State.TOLD, State.ANSWERED, State.UNANSWERED)
 
 
 class UnknownCase(LedgerError):
@@ -222,6 +224,7 @@ def open_moves(*, case: CaseRecord) -> tuple[OpenMove, ...]:
 
     Whether one is accepted depends on days and persons too; the procedure says so when it is tried.
     """
+    arrived = any(each.proved for each in case.so_far.deliveries)
     return tuple(
         OpenMove(
             move=str(row.move),
@@ -231,19 +234,98 @@ def open_moves(*, case: CaseRecord) -> tuple[OpenMove, ...]:
         for row in TABLE
         if case.so_far.state in row.sources
         and (Need.DELIVERY in row.needs or Role.BOOK not in row.roles)
+        and not (Need.STILL_UNPROVED in row.needs and arrived)
     )
 
 
-def last_days(*, commons_id: int, case: CaseRecord) -> tuple[date | None, date | None]:
-    """Return until when the member may answer and appeal; None where the days do not run."""
-    book = book_of(commons_id=commons_id, case=case)
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StepInWords:
+    """A step of the ladder in words, what it costs in the smallest coin, and the arithmetic."""
+
+    words: str
+    amount_minor: int
+    working: tuple[str, ...]
+
+
+def step_decided(*, commons_id: int, case: CaseRecord) -> StepInWords | None:
+    """Return the step that was decided, or None before a decision."""
+    if case.so_far.step is None:
+        return None
+    step = ladder_of(commons_id=commons_id, case=case).steps[case.so_far.step]
+    return StepInWords(
+        words=wording.step_words(step), amount_minor=case.so_far.amount_minor, working=()
+    )
+
+
+def step_ahead(*, commons_id: int, case: CaseRecord, today: date) -> StepInWords | None:
+    """Return the most that may follow, or None once it is decided or the case has ended.
+
+    Where the member was told, it is what the notice of that day proposed, and not more.
+    """
+    if case.so_far.state not in _UNDECIDED:
+        return None
+    told = [event.on for event in case.events if event.move is Move.TELL]
+    on = told[-1] if case.so_far.deliveries else today
+    due = step_foreseen(commons_id=commons_id, case=case, told_on=on)
+    finding = case.finding.finding
+    return StepInWords(
+        words=wording.step_words(due.step),
+        amount_minor=ladder.amount_due(step=due.step, breach=finding.breach, base=finding.base),
+        working=due.working,
+    )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DaysGiven:
+    """The days to answer and to appeal, and their last days; None where they do not run now."""
+
+    answer_days: int
+    answer_until: date | None
+    appeal_days: int
+    appeal_to: str
+    appeal_until: date | None
+
+
+def days_given(*, commons_id: int, case: CaseRecord, today: date) -> DaysGiven | None:
+    """Return the days that the edition in force today gives, by which moves are judged today.
+
+    None if it has no procedure clause.
+
+    :raises governance.bylaws.editions.NoEditionInForce: if no edition is in force.
+    """
+    book = bylaws.in_force(commons_id=commons_id, day=today)
     procedure = next((each for each in book.clauses if isinstance(each, clauses.Procedure)), None)
     if procedure is None:
-        return None, None
-    return (
-        clocks.answer_until(case=case.so_far, procedure=procedure),
-        clocks.appeal_until(case=case.so_far, procedure=procedure),
+        return None
+    so_far = case.so_far
+    answer, appeal = (
+        clocks.answer_until(case=so_far, procedure=procedure),
+        clocks.appeal_until(case=so_far, procedure=procedure),
     )
+    return DaysGiven(
+        answer_days=procedure.answer_to_warning_days
+        if _no_more_than_a_warning(commons_id, case, today)
+        else procedure.answer_days,
+        answer_until=answer if so_far.state is State.TOLD else None,
+        appeal_days=procedure.appeal_days,
+        appeal_to=procedure.appeal_to,
+        appeal_until=appeal if so_far.state is State.APPEAL_OPEN else None,
+    )
+
+
+def _no_more_than_a_warning(commons_id: int, case: CaseRecord, today: date) -> bool:
+    if case.so_far.deliveries:
+        return case.so_far.proposes_warning
+    foreseen = step_foreseen(commons_id=commons_id, case=case, told_on=today)
+    return isinstance(foreseen.step, clauses.Warning)
+
+
+def deciders(*, commons_id: int, case: CaseRecord, today: date) -> frozenset[int]:
+    """Return the members of the board who may decide; none where it falls to the assembly."""
+    board = commons.holders_of(commons_id=commons_id, role=Role.BOARD.value, day=today)
+    if case.so_far.concerns_board or board & case.so_far.subjects:
+        return frozenset()
+    return board - case.so_far.monitors - {case.so_far.reporter}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -16,3 +16,5 @@ CAUTIONS: tuple[str, ...] = (
     "The proof line shows tampering only to somebody who kept an earlier proof line. Keep this"
     " page: it is what the next report can be checked against.",
 )
+# What whoever reads one case has to mind: the first two.
+OF_A_CASE = CAUTIONS[:2]

@@ -170,6 +170,9 @@ def may_move_case(
         own = member == visitor.member and member in concerned
         written_down = move in _SPOKEN and visitor.holds(SECRETARY) and member in concerned
         allowed = own or written_down
+    elif move in _SPOKEN:
+        # What a member says is the member's, whoever writes it down.
+        allowed = False
     elif role == "assembly":
         allowed = visitor.holds(SECRETARY)
     elif role == "book":

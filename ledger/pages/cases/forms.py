@@ -4,7 +4,7 @@ from typing import Any
 
 from django import forms
 
-from ledger.pages.cases.words import MOVES
+from ledger.pages.cases.words import MOVES, SAID_BY
 
 NUMBER_MAX = 2**31 - 1
 
@@ -41,5 +41,6 @@ class MoveForm(forms.Form):
 
     @property
     def title(self) -> str:
-        """Return what the form does, in words."""
-        return MOVES[str(self["move"].value())]
+        """Return what the form does, in words, and for whom."""
+        role = str(self["role"].value())
+        return MOVES[str(self["move"].value())] + SAID_BY.get(role, "")

@@ -14,11 +14,12 @@ from governance.errors import StintbookError
 from ledger.cases import operations
 from ledger.cases import queries as cases
 from ledger.cases.queries import CaseRecord, OpenMove
+from ledger.commons import queries as commons
 from ledger.foundation.clocks import system_chance, system_clock
 from ledger.foundation.hands import Hand
 from ledger.judgement import queries as judgement
 from ledger.pages.cases.forms import MoveForm
-from ledger.pages.cases.words import MOVES, ROLES, STATES
+from ledger.pages.cases.words import MOVES, ROLES, state_in_words
 from ledger.pages.visiting import page, show
 from ledger.reports import cautions, numbers
 from ledger.web import visitors
@@ -49,15 +50,19 @@ def cases_page(request: HttpRequest, visitor: Visitor) -> HttpResponse:
     found = [
         case for case in cases.cases(commons_id=visitor.commons.commons_id) if _sees(visitor, case)
     ]
-    rows = [
-        (case, STATES[str(case.so_far.state)], str(case.so_far.state) in ENDED) for case in found
-    ]
+    rows = [(case, state_in_words(case), str(case.so_far.state) in ENDED) for case in found]
+    only = request.GET.get("only")
+    wanted = {"open": (False,), "ended": (True,)}.get(only or "", (False, True))
     days = [cases.days_between(case) for case in found]
     return show(
         request,
         visitor,
         "cases/cases.html",
-        rows=sorted(rows, key=lambda row: (row[2], row[0].number)),
+        rows=sorted(
+            (row for row in rows if row[2] in wanted), key=lambda row: (row[2], row[0].number)
+        ),
+        any_at_all=bool(rows),
+        sees_all=visitor.sees_everybody(),
         to_told=_median([told for told, _ in days if told is not None]),
         to_decided=_median([decided for _, decided in days if decided is not None]),
     )
@@ -94,7 +99,7 @@ def move(request: HttpRequest, visitor: Visitor, number: int) -> HttpResponse:
     messages.success(
         request,
         f"Recorded by entry {after.entries[-1]}: {MOVES[asked[0]]}, by {ROLES[asked[1]]}."
-        f" The case is now {STATES[str(after.so_far.state)]}.",
+        f" The case is now {state_in_words(after)}.",
     )
     return redirect("case", slug=visitor.commons.slug, number=number)
 
@@ -165,6 +170,9 @@ def _offered(visitor: Visitor, case: CaseRecord) -> Iterator[Offered]:
     concerned = case.so_far.subjects
     for each in cases.open_moves(case=case):
         for role in each.roles:
+            # What a member says stands in the member's name, whoever writes it down.
+            if role == "secretary" and "member" in each.roles:
+                continue
             own = visitor.member if role != "member" or visitor.member in concerned else None
             named = own is None and role == "member"
             member = min(concerned, default=None) if named else own
@@ -198,8 +206,9 @@ def _shown(
     status: int = 200,
 ) -> HttpResponse:
     commons_id = visitor.commons.commons_id
-    answer_until, appeal_until = cases.last_days(commons_id=commons_id, case=case)
     today = visitor.commons.day_of(system_clock())
+    ahead = cases.step_ahead(commons_id=commons_id, case=case, today=today)
+    decided = cases.step_decided(commons_id=commons_id, case=case)
     forms = [
         tried[1]
         if tried is not None and tried[0] == (each.move.move, each.role)
@@ -212,21 +221,35 @@ def _shown(
         "cases/case.html",
         status=status,
         case=case,
-        state=STATES[str(case.so_far.state)],
+        state=state_in_words(case),
         clause=cases.clause_text(commons_id=commons_id, case=case),
         reasons=judgement.explained(commons_id=commons_id, number=case.finding.number),
-        foreseen=cases.step_foreseen(commons_id=commons_id, case=case, told_on=today).working,
-        measure=cases.measure(commons_id=commons_id, case=case),
-        amount=numbers.money(case.so_far.amount_minor, currency=visitor.commons.money),
-        answer_until=answer_until,
-        appeal_until=appeal_until,
+        ahead=ahead,
+        ahead_sum=_sum(visitor, ahead),
+        decided=decided,
+        decided_sum=_sum(visitor, decided),
+        days=cases.days_given(commons_id=commons_id, case=case, today=today),
+        deciders=_names(visitor, cases.deciders(commons_id=commons_id, case=case, today=today)),
         events=[
             (event, entry, MOVES[str(event.move)], ROLES[str(event.actor.role)])
             for event, entry in zip(case.events, case.entries, strict=True)
         ],
         forms=forms,
-        cautions=cautions.CAUTIONS,
+        cautions=cautions.OF_A_CASE,
     )
+
+
+def _sum(visitor: Visitor, step: cases.StepInWords | None) -> str:
+    """Return what a step costs with its currency, or nothing where it costs nothing."""
+    if step is None or not step.amount_minor:
+        return ""
+    currency = visitor.commons.money
+    return f"{numbers.money(step.amount_minor, currency=currency)} {currency}"
+
+
+def _names(visitor: Visitor, members: frozenset[int]) -> list[str]:
+    known = commons.members(commons_id=visitor.commons.commons_id)
+    return [known[number].name for number in sorted(members)]
 
 
 def _median(days: list[int]) -> int | None:

@@ -1,5 +1,7 @@
 """States, moves and roles of a case as people read them."""
 
+from ledger.cases.queries import CaseRecord
+
 STATES = {
     "noted": "noted: something was computed, and nobody is accused",
     "checking": "being checked by its case officer",
@@ -14,6 +16,7 @@ STATES = {
     "final": "final: it takes effect",
     "done": "done",
 }
+NOT_ARRIVED = "told, and that the notice arrived is not proved: the days to answer do not run yet"
 MOVES = {
     "note": "note it",
     "check": "have it checked by a case officer",
@@ -40,3 +43,17 @@ ROLES = {
     "auditor": "the auditor",
     "member": "the member",
 }
+# Who stands behind a move that somebody else may write down.
+SAID_BY = {
+    "board": ", for the board",
+    "assembly": ", as the assembly resolved",
+    "member": ", as the member says",
+}
+
+
+def state_in_words(case: CaseRecord) -> str:
+    """Return where a case stands; a notice that did not count as delivered yet starts no days."""
+    state = str(case.so_far.state)
+    if state == "told" and case.so_far.told_on is None:
+        return NOT_ARRIVED
+    return STATES[state]

@@ -46,6 +46,7 @@ def test_a_case_moves_by_the_hands_it_belongs_to(stage: Stage) -> None:
     words = {"move": "answer", "reason": "The scale was wet."}
     assert _move(stage, "monitor", case, role="monitor", **words).status_code == 404
     assert _move(stage, "board", case, role="member", member=MEMBER, **words).status_code == 403
+    assert _move(stage, "secretary", case, role="secretary", **words).status_code == 403
     answered = _move(stage, "member", case, role="member", **words)
     assert answered.json()["state"] == "answered"
     decision = {"move": "decide", "role": "board", "reason": "It was over the limit."}

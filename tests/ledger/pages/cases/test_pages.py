@@ -1,7 +1,7 @@
 """A case at its page: read as a notice, and moved by those whose moves they are."""
 
 import re
-from datetime import date
+from datetime import date, timedelta
 from typing import Any
 
 import pytest
@@ -9,6 +9,7 @@ from django.test import Client
 
 from ledger.cases import queries as cases
 from tests.ledger import builders, scene
+from tests.ledger.book_text import book_text
 from tests.ledger.pages.conftest import At
 
 DAY = date(2026, 3, 2)
@@ -116,3 +117,78 @@ def test_what_was_typed_is_kept_where_a_move_is_refused(noted: scene.Scene, at: 
     assert stale.status_code == 409
     assert "Somebody moved this case" in stale.content.decode()
     assert _state(noted) == "noted"
+
+
+def _told(noted: scene.Scene, at: At, *, proved: bool = True) -> Client:
+    """Bring the case to the notice, handed over today; return the secretary's browser."""
+    secretary = at(4)
+    _move(secretary, noted, "check", "secretary", officer=3)
+    on = cases.case(commons_id=noted.commons_id, number=1).so_far.last_on.isoformat()
+    arrived = {"proved": "on"} if proved else {}
+    _move(secretary, noted, "tell", "secretary", on=on, means="by hand", **arrived)
+    return secretary
+
+
+def test_a_printed_notice_says_what_may_follow_and_how_long_to_answer(
+    noted: scene.Scene, at: At
+) -> None:
+    """Before it is handed over: the ladder's first step, and the book's seven days."""
+    page = at(4).get(CASE).content.decode()
+    assert "At most a written warning" in page
+    assert "has 7 days to answer" in page
+    assert "Those who may decide" in page
+
+
+def test_the_last_day_is_of_the_edition_that_moves_are_judged_by(
+    noted: scene.Scene, at: At
+) -> None:
+    """A later edition that gives ten days for seven moves the day that the page names."""
+    _told(noted, at)
+    so_far = cases.case(commons_id=noted.commons_id, number=1).so_far
+    assert so_far.told_on is not None
+    longer = book_text(edition=2, first=date(2026, 3, 9)).replace(
+        "answer_to_warning: 7 d", "answer_to_warning: 10 d"
+    )
+    scene.adopts(noted, longer)
+    until = so_far.told_on + timedelta(days=10)
+    assert f"<strong>{until.isoformat()}</strong>" in at(5).get(CASE).content.decode()
+
+
+def test_days_that_do_not_run_are_not_named(noted: scene.Scene, at: At) -> None:
+    """Not while the delivery is unproved, and not when the answer is in."""
+    _told(noted, at, proved=False)
+    page = at(5).get(CASE).content.decode()
+    assert "the days to answer do not run yet" in page
+    assert "may answer until" not in page
+    _move(at(5), noted, "answer", "member", reason="The scale was wet.")
+    page = at(5).get(CASE).content.decode()
+    assert "may answer" not in page
+
+
+def test_an_overturned_case_offers_neither_a_step_nor_an_appeal(noted: scene.Scene, at: At) -> None:
+    """What was decided is told as past."""
+    secretary = _told(noted, at)
+    _move(at(5), noted, "answer", "member", reason="The scale was wet.")
+    _move(at(1), noted, "decide", "board", reason="Over the limit.")
+    on = cases.case(commons_id=noted.commons_id, number=1).so_far.last_on.isoformat()
+    _move(secretary, noted, "open_appeal", "book", on=on, means="by hand", proved="on")
+    assert "may appeal to the assembly until" in at(5).get(CASE).content.decode()
+    _move(at(5), noted, "lodge_appeal", "member", reason="I object.")
+    _move(secretary, noted, "overturn", "assembly", reason="It was wet.")
+    page = at(5).get(CASE).content.decode()
+    assert "That was overturned and holds no more." in page
+    assert not re.search("may appeal|may answer|At most", page)
+    listed = at(4).get("/c/reed-bank/cases/?only=open").content.decode()
+    assert "Case 1" not in listed
+    assert "Case 1" in at(4).get("/c/reed-bank/cases/?only=ended").content.decode()
+
+
+def test_an_answer_always_names_the_member_who_gave_it(noted: scene.Scene, at: At) -> None:
+    """The secretary has one form for it, and none to answer in their own name."""
+    secretary = _told(noted, at)
+    page = secretary.get(CASE).content.decode()
+    assert page.count('value="answer"') == 1
+    assert 'value="attempt"' not in page, "the notice arrived, with proof"
+    refused = _move(secretary, noted, "answer", "secretary", reason="They said so.")
+    assert refused.status_code == 409
+    assert _state(noted) == "told"
