@@ -177,6 +177,8 @@ ACCOUNT_EMAIL_VERIFICATION = "none"
 ACCOUNT_ADAPTER = "ledger.identity.adapter.AccountAdapter"
 ACCOUNT_LOGOUT_REDIRECT_URL = "/"
 ACCOUNT_LOGOUT_ON_PASSWORD_CHANGE = False
+# Telephones are shared: a sign-in ends with the browser.
+ACCOUNT_SESSION_REMEMBER = False
 ACCOUNT_PREVENT_ENUMERATION = True
 # Minutes of a lock, never for ever: a lock for ever would let anybody shut anybody out.
 ACCOUNT_RATE_LIMITS = {"login": "60/m/ip", "login_failed": "20/5m/ip,10/5m/key"}
