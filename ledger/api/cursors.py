@@ -73,7 +73,8 @@ def asked(request: Request) -> Asked:
 def answer(request: Request, *, visitor: Visitor, asked: Asked) -> Response:
     """Return a part of the journal; ``next`` and the Link header (RFC 8288) lead to the following.
 
-    Who may not see everybody's entries is given their own.
+    Who may not see everybody's entries is given their own. A part may hold fewer than asked for,
+    where some are not for the visitor.
     """
     sees_all = visitor.sees_entry_about(0)
     member = asked.member if sees_all else visitor.member
@@ -84,8 +85,9 @@ def answer(request: Request, *, visitor: Visitor, asked: Asked) -> Response:
         kinds=None if asked.kind is None else (asked.kind,),
     )
     part = list(islice(found, asked.limit + 1))
-    shown = part[: asked.limit]
-    more = _next(request, asked, shown[-1].number) if len(part) > asked.limit else None
+    read = part[: asked.limit]
+    more = _next(request, asked, read[-1].number) if len(part) > asked.limit else None
+    shown = [each for each in read if visitor.sees_entry(kind=each.kind, subject=each.subject)]
     document: dict[str, Any] = {"entries": [answers.entry(each) for each in shown], "next": more}
     return Response(document, headers={"Link": f'<{more}>; rel="next"'} if more else {})
 

@@ -21,7 +21,7 @@ from ledger.journal import queries as journal
 from ledger.journal.leaves import Receipt
 from ledger.movements import operations as movements
 from ledger.movements.operations import Line, Slip
-from ledger.web.visitors import MONITOR, SECRETARY, NotHere, NotYours
+from ledger.web.visitors import SECRETARY, NotHere, NotYours
 
 BATCH_MAX = 500
 # Clocks of phones go wrong by minutes; a take of tomorrow is a slip of the pen.
@@ -255,7 +255,7 @@ class OneEntry(CommonsView):
     def get(self, request: Request, slug: str, number: int) -> Response:
         """Read an entry with its postings."""
         entry = journal.entry(commons_id=self.commons_id, number=number)
-        if not self.visitor.sees_entry_about(entry.subject):
+        if not self.visitor.sees_entry(kind=entry.kind, subject=entry.subject):
             raise NotHere(what="entry")
         return Response(answers.entry(entry))
 
@@ -271,8 +271,7 @@ class EntryReceipt(CommonsView):
     def get(self, request: Request, slug: str, number: int) -> Response:
         """Read the leaf of an entry and the path that leads from it to the head (RFC 9162)."""
         entry = journal.entry(commons_id=self.commons_id, number=number)
-        mine = entry.subject is None or self.visitor.sees_member(entry.subject)
-        if not mine and not self.visitor.holds(MONITOR):
+        if not self.visitor.sees_entry(kind=entry.kind, subject=entry.subject):
             raise NotHere(what="entry")
         head = journal.head(commons_id=self.commons_id)
         leaf = journal.receipt_leaf(commons_id=self.commons_id, number=number)

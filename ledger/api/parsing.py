@@ -15,7 +15,8 @@ from rest_framework.parsers import BaseParser
 
 DEPTH_MAX = 20
 DIGITS_MAX = 30
-_STRING_OR_BRACKET = re.compile(rb'"(?:[^"\\]|\\.)*"|[\[\]{}]', re.DOTALL)
+# Nothing is given back once it was read, so that a text without end takes no longer than another.
+_STRING_OR_BRACKET = re.compile(rb'"(?:[^"\\]++|\\.)*+(?:"|\\?\Z)|[\[\]{}]', re.DOTALL)
 _SURROGATE = re.compile("[\ud800-\udfff]")
 
 

@@ -12,6 +12,7 @@ from governance.sanctions.moves import Move, Need, Role, State
 from governance.sanctions.record import Actor, CaseSoFar, Delivery, Event
 from ledger.bylaws import queries as bylaws
 from ledger.cases import models, queries, writing
+from ledger.commons import operations as commons
 from ledger.commons import queries as commons_queries
 from ledger.fieldwork import queries as fieldwork
 from ledger.foundation import outbox, transactions
@@ -141,10 +142,13 @@ def move(*, commons_id: int, case: int, act: Act, hand: Hand) -> CaseSoFar:
     :raises FindingChanged: if the finding is another than the member was told of.
     :raises NoProcedure: if the edition in force does not say how cases are dealt with.
     :raises ledger.cases.queries.UnknownCase: if there is no such case.
+    :raises ledger.commons.operations.UnknownMember: if nobody has the case officer's number.
     """
     if act.move == Move.RETURN_TO_CHECKING:
         raise NotByHand(move=act.move)
     journal.hold(commons_id=commons_id)
+    if act.officer is not None:
+        commons.check_member(commons_id=commons_id, member=act.officer)
     return _moved(queries.case(commons_id=commons_id, number=case), act, hand)
 
 

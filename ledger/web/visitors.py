@@ -19,6 +19,10 @@ SECRETARY, MONITOR, BOARD, AUDITOR = "secretary", "monitor", "board", "auditor"
 OFFICES = (SECRETARY, MONITOR, BOARD, AUDITOR)
 
 
+# Kinds of entries that monitors read of others: what was taken, worked and inspected.
+_WATCHED = frozenset({"withdrawal", "work_given", "inspection"})
+
+
 class NotHere(LedgerError):
     """There is nothing here for whoever asks; whether there is for others is not told."""
 
@@ -81,6 +85,15 @@ class Visitor:
         if member is None or member == self.member:
             return True
         return self.holds(SECRETARY, MONITOR, BOARD, AUDITOR)
+
+    def sees_entry(self, *, kind: str, subject: int | None) -> bool:
+        """Return whether the visitor may see an entry; a monitor sees of others what was taken.
+
+        What a case, a sanction or a due says of a member is for those alone who may see the case.
+        """
+        if subject is None or self.sees_member(subject):
+            return True
+        return self.holds(MONITOR) and kind in _WATCHED
 
     def sees_everybody(self) -> bool:
         """Return whether the visitor may see all members' rows, not group totals alone."""

@@ -33,11 +33,12 @@ def entries(request: HttpRequest, visitor: Visitor) -> HttpResponse:
         subject=member,
         own=None if everybody else visitor.member,
     )
+    shown = [each for each in found if visitor.sees_entry(kind=each.kind, subject=each.subject)]
     return show(
         request,
         visitor,
         "desk/entries.html",
-        listed=wording.entries(kept=visitor.commons, found=found),
+        listed=wording.entries(kept=visitor.commons, found=shown),
         member=member,
         kind=kind,
         kinds=wording.KINDS.items(),
@@ -88,7 +89,7 @@ def seen(visitor: Visitor, number: int) -> EntryRecord:
         found = journal.entry(commons_id=visitor.commons.commons_id, number=number)
     except journal.EntryNotFound as error:
         raise NotHere(what="entry") from error
-    if not visitor.sees_entry_about(found.subject):
+    if not visitor.sees_entry(kind=found.kind, subject=found.subject):
         raise NotHere(what="entry")
     return found
 

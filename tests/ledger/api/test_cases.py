@@ -81,3 +81,27 @@ def test_what_the_procedure_refuses_is_a_conflict(stage: Stage) -> None:
     unknown = _move(stage, "secretary", case, move="forgive", role="secretary")
     assert unknown.status_code == 400
     assert "accepted are" in unknown.json()["detail"]
+
+
+def test_a_monitor_reads_no_case_in_the_entries(stage: Stage) -> None:
+    """What was taken, yes; what was found, checked or said of it, no."""
+    case = _noted(stage)
+    _move(stage, "secretary", case, move="check", role="secretary", officer=3)
+    everything = stage.get("secretary", "entries?limit=200").json()["entries"]
+    private = [each["number"] for each in everything if each["kind"].startswith("case_")]
+    assert private
+    seen = stage.get("monitor", "entries?limit=200").json()["entries"]
+    assert not {each["number"] for each in seen} & set(private)
+    assert "withdrawal" in {each["kind"] for each in seen}
+    for number in private:
+        assert stage.get("monitor", f"entries/{number}").status_code == 404
+        assert stage.get("monitor", f"entries/{number}/receipt").status_code == 404
+
+
+def test_an_officer_is_a_member(stage: Stage) -> None:
+    """A number that nobody has is refused, and the case stays where it was."""
+    case = _noted(stage)
+    refused = _move(stage, "secretary", case, move="check", role="secretary", officer=2**31 - 1)
+    assert refused.status_code == 400
+    assert refused.json()["type"] == "/problems/commons.unknown_member"
+    assert stage.get("secretary", f"cases/{case}").json()["state"] == "noted"

@@ -23,6 +23,7 @@ HOSTILE = {
     "a mark of order": b"\xef\xbb\xbf{}",
     "two bytes a sign": "{}".encode("utf-16"),
     "Latin-1": '{"a": "é"}'.encode("latin-1"),
+    "a megabyte of escapes without end": b'"' + b'\\"' * 500_000,
     "nothing": b"",
     "half": b'{"a": ',
     "two values": b"{} {}",
