@@ -81,6 +81,7 @@ _CODE_OF = {
     status.HTTP_404_NOT_FOUND: "api.no_such_address",
     status.HTTP_405_METHOD_NOT_ALLOWED: "api.no_such_method",
     status.HTTP_406_NOT_ACCEPTABLE: "api.no_such_form",
+    status.HTTP_413_REQUEST_ENTITY_TOO_LARGE: "api.body_too_large",
     status.HTTP_415_UNSUPPORTED_MEDIA_TYPE: "api.unknown_form",
     status.HTTP_429_TOO_MANY_REQUESTS: "api.too_many_requests",
 }

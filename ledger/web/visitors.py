@@ -23,6 +23,10 @@ OFFICES = (SECRETARY, MONITOR, BOARD, AUDITOR)
 _WATCHED = frozenset({"withdrawal", "work_given", "inspection"})
 
 
+# Kinds about nobody in particular whose postings show what each member has, took or owes.
+_SPLIT = frozenset({"allowable_adopted", "season_closed", "duties_assessed"})
+
+
 class NotHere(LedgerError):
     """There is nothing here for whoever asks; whether there is for others is not told."""
 
@@ -91,7 +95,9 @@ class Visitor:
 
         What a case, a sanction or a due says of a member is for those alone who may see the case.
         """
-        if subject is None or self.sees_member(subject):
+        if subject is None:
+            return kind not in _SPLIT or self.sees_everybody()
+        if self.sees_member(subject):
             return True
         return self.holds(MONITOR) and kind in _WATCHED
 

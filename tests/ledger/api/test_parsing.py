@@ -6,7 +6,7 @@ import pytest
 from rest_framework.exceptions import ParseError
 
 from ledger.api import parsing
-from tests.ledger.api.stage import Stage
+from tests.ledger.api.stage import Stage, slip
 
 HOSTILE = {
     "100,000 brackets": b"[" * 100_000,
@@ -23,7 +23,7 @@ HOSTILE = {
     "a mark of order": b"\xef\xbb\xbf{}",
     "two bytes a sign": "{}".encode("utf-16"),
     "Latin-1": '{"a": "é"}'.encode("latin-1"),
-    "a megabyte of escapes without end": b'"' + b'\\"' * 500_000,
+    "400,000 escapes without end": b'"' + b'\\"' * 400_000,
     "nothing": b"",
     "half": b'{"a": ',
     "two values": b"{} {}",
@@ -66,3 +66,15 @@ def test_twenty_levels_are_read() -> None:
 def test_a_body_that_is_no_object_is_refused(stage: Stage, body: bytes) -> None:
     """A slip is an object."""
     assert stage.post("secretary", "withdrawals", body, Idempotency_Key="k").status_code == 400
+
+
+@pytest.mark.parametrize(("size", "status"), [(1_000_000, 201), (1_000_001, 413)])
+def test_a_body_has_a_million_bytes_at_most(stage: Stage, size: int, status: int) -> None:
+    """The border, with an honest slip after blanks; beyond it nothing is recorded."""
+    before = stage.bay.size
+    body = json.dumps(slip()).encode().rjust(size)
+    answer = stage.post("member", "withdrawals", body, Idempotency_Key="k")
+    assert answer.status_code == status
+    assert stage.bay.size == before + (status == 201)
+    if status == 413:
+        assert answer.json()["type"] == "/problems/api.body_too_large"
