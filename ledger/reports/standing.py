@@ -30,7 +30,7 @@ class SeasonStanding:
     """A member's part of a season that is not closed; amounts in base units.
 
     ``left`` is what may still be taken, below zero where more was taken than allotted. ``current``
-    says that today lies in the season.
+    says that today lies in the season, ``ended`` that it lies before today.
     """
 
     season: str
@@ -40,6 +40,7 @@ class SeasonStanding:
     first: date
     last: date
     current: bool
+    ended: bool
     allotted: int
     taken: int
     left: int
@@ -52,6 +53,8 @@ class SeasonStanding:
         window = f"{self.first} to {self.last}"
         if self.left < 0:
             return f"{left} of {self.resource} more was taken than the {allotted} of {window}."
+        if self.ended:
+            return f"The season of {window} has ended; {left} of {self.resource} was left untaken."
         if not self.current:
             return f"{left} of {self.resource} may be taken in the season of {window}."
         return f"{left} of {self.resource} may still be taken, of {allotted} for {window}."
@@ -155,6 +158,7 @@ def _season(commons_id: int, season: SeasonRecord, member: int, today: date) -> 
         first=season.during.first,
         last=season.during.last,
         current=season.during.holds(today),
+        ended=season.during.until <= today,
         allotted=left + taken,
         taken=taken,
         left=left,

@@ -107,3 +107,13 @@ def test_a_season_shows_the_groups_sums(bay: scene.Scene) -> None:
 def test_a_small_count_points_at_nobody(count: int, words: str) -> None:
     """Below five it is told as few."""
     assert progress.few(count) == words
+
+
+def test_an_ended_season_offers_nothing(bay: scene.Scene) -> None:
+    """The season ends on 28 June; what was left of it may not be taken on the 29th."""
+    bay.morning(date(2026, 6, 28))
+    assert all("may still be taken" in each.sentence for each in _standing(bay, 1).seasons)
+    bay.morning(date(2026, 6, 29))
+    for each in _standing(bay, 1).seasons:
+        assert "has ended" in each.sentence
+        assert "may" not in each.sentence
